@@ -1,0 +1,4 @@
+//! Placeholder.
+#![forbid(unsafe_code)]
+mod shape;
+pub use shape::Shape;

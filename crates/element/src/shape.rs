@@ -61,9 +61,11 @@ impl Shape {
     /// Local vertices of a side, in walking order. Sides are numbered modulo their count.
     #[must_use]
     pub const fn side_vertices(self, side: usize) -> &'static [usize] {
+        const INTERVAL: [[usize; 1]; 2] = [[0], [1]];
+        const TRIANGLE: [[usize; 2]; 3] = [[0, 1], [1, 2], [2, 0]];
         match self {
-            Self::Interval => [&[0], &[1]][side % 2] as &[usize],
-            Self::Triangle => [&[0, 1], &[1, 2], &[2, 0]][side % 3] as &[usize],
+            Self::Interval => &INTERVAL[side % 2],
+            Self::Triangle => &TRIANGLE[side % 3],
         }
     }
 

@@ -67,7 +67,9 @@ pub enum MeshError {
         measure: f64,
     },
     /// Two cells cover the same ground beside a common side.
-    #[error("{first} and {second} overlap beside their common side at {at:?}: remove one of them or mend the vertex list")]
+    #[error(
+        "{first} and {second} overlap beside their common side at {at:?}: remove one of them or mend the vertex list"
+    )]
     OverlappingCells {
         /// One cell.
         first: CellId,
@@ -129,7 +131,9 @@ pub enum MeshError {
         needed: &'static str,
     },
     /// A point that lies in no cell.
-    #[error("the point {at:?} lies outside the mesh: ask within its bounding box {low:?} to {high:?} and off its holes")]
+    #[error(
+        "the point {at:?} lies outside the mesh: ask within its bounding box {low:?} to {high:?} and off its holes"
+    )]
     OutsideMesh {
         /// Where.
         at: Vec<f64>,

@@ -68,16 +68,7 @@ impl<const D: usize> Mesh<D> {
         debug_assert_eq!(shape.dimension(), D);
         debug_assert_eq!(connectivity.len(), regions.len() * shape.vertex_count());
         named_sides.sort_unstable();
-        Self {
-            shape,
-            points,
-            connectivity,
-            regions,
-            region_names,
-            side_names,
-            named_sides,
-            topology: OnceLock::new(),
-        }
+        Self { shape, points, connectivity, regions, region_names, side_names, named_sides, topology: OnceLock::new() }
     }
 
     /// Number of vertices.

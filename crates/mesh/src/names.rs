@@ -57,10 +57,6 @@ impl Names {
 
     /// Like [`Names::find`], with an error that lists the names there are.
     pub(crate) fn require(&self, what: &'static str, name: &str) -> Result<u32, MeshError> {
-        self.find(name).ok_or_else(|| MeshError::UnknownName {
-            what,
-            name: name.to_owned(),
-            known: self.list.clone(),
-        })
+        self.find(name).ok_or_else(|| MeshError::UnknownName { what, name: name.to_owned(), known: self.list.clone() })
     }
 }

@@ -2,6 +2,7 @@
 #![forbid(unsafe_code)]
 
 mod error;
+mod hilbert;
 mod id;
 mod mesh;
 mod names;

@@ -28,6 +28,28 @@ pub enum MeshError {
         /// Where.
         at: Vec<f64>,
     },
+    /// Nodes that are not in ascending order.
+    #[error("{what} {index} at {value} lies before the one ahead of it at {before}: list them in ascending order")]
+    NotAscending {
+        /// What they are.
+        what: &'static str,
+        /// The number of the later one.
+        index: usize,
+        /// Where the one ahead of it in the list is.
+        before: f64,
+        /// Where the later one is.
+        value: f64,
+    },
+    /// A piece of an interval that does not begin where the one before ends.
+    #[error("piece {index} begins at {value}, but the one before ends at {before}: let it begin there")]
+    Gap {
+        /// The number of the piece.
+        index: usize,
+        /// Where the piece before ends.
+        before: f64,
+        /// Where the piece begins.
+        value: f64,
+    },
     /// A name that does not exist.
     #[error("there is no {what} named \"{name}\": use one of {known:?}")]
     UnknownName {

@@ -4,12 +4,18 @@
 mod error;
 mod hilbert;
 mod id;
+mod interval;
+mod limits;
+mod longest_side;
 mod mesh;
 mod names;
+mod rectangle;
 mod topology;
 
 pub use error::MeshError;
 pub use id::{CellId, RegionId, SideId, SideNameId, VertexId};
+pub use interval::{Interval, Toward};
 pub use mesh::{Mesh, NamedSide};
 pub use names::Names;
+pub use rectangle::{Diagonal, Rectangle};
 pub use topology::Topology;

@@ -110,6 +110,14 @@ pub enum MeshError {
         /// How many there are.
         count: usize,
     },
+    /// A cell number beyond the cells of the mesh.
+    #[error("{cell} does not exist: the mesh has {count} cells, numbered from 0")]
+    NoSuchCell {
+        /// The number that was given.
+        cell: CellId,
+        /// How many cells there are.
+        count: usize,
+    },
     /// A vertex that belongs to no cell.
     #[error("{vertex} at {at:?} belongs to no cell: remove it")]
     UnusedVertex {

@@ -1,7 +1,9 @@
 //! Placeholder.
 #![forbid(unsafe_code)]
 
+mod bisect;
 mod error;
+mod halves;
 mod hilbert;
 mod id;
 mod interval;
@@ -10,6 +12,7 @@ mod longest_side;
 mod mesh;
 mod names;
 mod rectangle;
+mod relation;
 mod topology;
 
 pub use error::MeshError;
@@ -18,4 +21,5 @@ pub use interval::{Interval, Toward};
 pub use mesh::{Mesh, NamedSide};
 pub use names::Names;
 pub use rectangle::{Diagonal, Rectangle};
+pub use relation::Relation;
 pub use topology::Topology;

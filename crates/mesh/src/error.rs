@@ -1,6 +1,6 @@
 //! What can be wrong with a mesh or with what it is made from.
 
-use crate::{CellId, VertexId};
+use crate::{CellId, LoopFault, VertexId};
 
 /// An error of mesh generation, checking, refinement or location. Each names the place and ends with the mend.
 #[derive(Debug, Clone, PartialEq, thiserror::Error)]
@@ -142,6 +142,16 @@ pub enum MeshError {
         /// What it names, in words.
         place: String,
     },
+    /// A side that is given two names.
+    #[error("the side at {at:?} is named both \"{first}\" and \"{second}\": give it one name")]
+    NamedTwice {
+        /// One name.
+        first: String,
+        /// The other.
+        second: String,
+        /// Middle of the side.
+        at: Vec<f64>,
+    },
     /// Array lengths that do not fit together.
     #[error("{what} has {given} entries where {expected} are needed: give one for each")]
     WrongLength {
@@ -173,7 +183,7 @@ pub enum MeshError {
         high: Vec<f64>,
     },
     /// More entities than the index type can count.
-    #[error("{what} would be {count}, more than {limit} can be numbered: use a coarser mesh")]
+    #[error("{what} would be {count}, more than the {limit} that can be: use a coarser mesh")]
     TooMany {
         /// What is counted.
         what: &'static str,
@@ -181,5 +191,33 @@ pub enum MeshError {
         count: usize,
         /// How many there may be.
         limit: usize,
+    },
+    /// A loop of an outline is not the border of an area.
+    #[error("the loop \"{name}\" {fault} at {at:?}: {}", .fault.mend())]
+    Loop {
+        /// Name of the region or hole.
+        name: String,
+        /// What is wrong.
+        fault: LoopFault,
+        /// Where.
+        at: Vec<f64>,
+    },
+    /// The loop of a region reaches over the rim of what it overlaps.
+    #[error(
+        "the loops \"{first}\" and \"{second}\" cross at {at:?}: let them share a border, or put one inside the other"
+    )]
+    CrossingLoops {
+        /// The region or hole stated earlier.
+        first: String,
+        /// The later one.
+        second: String,
+        /// Where.
+        at: Vec<f64>,
+    },
+    /// Borders so close to each other that numbers cannot tell them apart.
+    #[error("borders are too close to each other near {at:?}: let them coincide or move them apart")]
+    TooThin {
+        /// Where.
+        at: Vec<f64>,
     },
 }

@@ -8,7 +8,7 @@ const TIE: f64 = 1e-10;
 
 /// The vertices of a triangle rotated so that side 0 is the longest; among equally long sides it is the one with the
 /// smaller vertex numbers.
-pub(crate) fn longest_side_first(points: &[[f64; 2]], v: [VertexId; 3]) -> [VertexId; 3] {
+pub(crate) fn longest_side_first<const D: usize>(points: &[[f64; D]], v: [VertexId; 3]) -> [VertexId; 3] {
     let turned = |i: usize| [v[i], v[(i + 1) % 3], v[(i + 2) % 3]];
     let length = |i: usize| distance(&points[v[i].index()], &points[v[(i + 1) % 3].index()]);
     let lengths = [length(0), length(1), length(2)];

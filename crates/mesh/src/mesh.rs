@@ -71,6 +71,13 @@ impl<const D: usize> Mesh<D> {
         Self { shape, points, connectivity, regions, region_names, side_names, named_sides, topology: OnceLock::new() }
     }
 
+    /// The same mesh with other names for its sides.
+    pub(crate) fn with_named_sides(mut self, side_names: Names, mut named_sides: Vec<NamedSide>) -> Self {
+        named_sides.sort_unstable();
+        (self.side_names, self.named_sides) = (side_names, named_sides);
+        self
+    }
+
     /// Number of vertices.
     #[must_use]
     pub fn vertex_count(&self) -> usize {

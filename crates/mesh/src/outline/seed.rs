@@ -1,0 +1,85 @@
+//! Points of a lattice of equilateral triangles where the wanted size is the same all around: there no refinement
+//! could do better.
+
+use super::insert::{Cavity, Spot};
+use super::loops::distance_to_segment;
+use super::sizes::SizeField;
+use super::triangulation::{NONE, Triangulation};
+
+/// Lattice points keep this distance from other vertices, in sizes.
+const FROM_VERTICES: f64 = 0.72;
+/// Lattice points keep this distance from segments, in sizes.
+const FROM_SEGMENTS: f64 = 0.6;
+
+/// A triangle before seeding: it is convex and crossed by no segment, so its seeds can be reached from one another.
+struct Field {
+    corners: [[f64; 2]; 3],
+    vertex: u32,
+    region: u32,
+}
+
+/// Puts lattice points into all triangles that are large against the wanted size. `low` anchors the lattice.
+pub(super) fn seed(mesh: &mut Triangulation, cavity: &mut Cavity, sizes: &SizeField, low: [f64; 2]) {
+    let fields: Vec<Field> = (0..mesh.triangle_count() as u32)
+        .map(|t| Field {
+            corners: mesh.corners(t),
+            vertex: mesh.origin[3 * t as usize],
+            region: mesh.region[t as usize],
+        })
+        .filter(|f| f.region != NONE)
+        .collect();
+    for field in fields {
+        seed_field(mesh, cavity, sizes, low, &field);
+    }
+}
+
+fn seed_field(mesh: &mut Triangulation, cavity: &mut Cavity, sizes: &SizeField, low: [f64; 2], field: &Field) {
+    let size = sizes.of_region(field.region);
+    let height = 0.75_f64.sqrt() * size;
+    let bottom = field.corners.iter().map(|c| c[1]).fold(f64::INFINITY, f64::min);
+    let top = field.corners.iter().map(|c| c[1]).fold(f64::NEG_INFINITY, f64::max);
+    let (first, last) = (((bottom - low[1]) / height).ceil() as i64, ((top - low[1]) / height).floor() as i64);
+    let mut from = field.vertex;
+    for row in first..=last {
+        let y = low[1] + row as f64 * height;
+        let Some((left, right)) = chord(&field.corners, y) else { continue };
+        let shift = low[0] + if row % 2 == 0 { 0.0 } else { 0.5 * size };
+        let (begin, end) = (((left - shift) / size).ceil() as i64, ((right - shift) / size).floor() as i64);
+        for k in begin..=end {
+            // There and back again, so that each point is near the one before.
+            let column = if row % 2 == 0 { k } else { begin + end - k };
+            let x = [shift + column as f64 * size, y];
+            if sizes.by_sources(x) >= size {
+                if let Some(vertex) = try_seed(mesh, cavity, x, size, from) {
+                    from = vertex;
+                }
+            }
+        }
+    }
+}
+
+/// Where a horizontal line cuts a triangle.
+fn chord(corners: &[[f64; 2]; 3], y: f64) -> Option<(f64, f64)> {
+    let mut cut = (f64::INFINITY, f64::NEG_INFINITY);
+    for i in 0..3 {
+        let (a, b) = (corners[i], corners[(i + 1) % 3]);
+        if (a[1] <= y) != (b[1] <= y) {
+            let x = a[0] + (y - a[1]) / (b[1] - a[1]) * (b[0] - a[0]);
+            cut = (cut.0.min(x), cut.1.max(x));
+        }
+    }
+    (cut.0 < cut.1).then_some(cut)
+}
+
+/// Inserts a lattice point unless it comes too close to what is there. The way starts at vertex `from`.
+fn try_seed(mesh: &mut Triangulation, cavity: &mut Cavity, x: [f64; 2], size: f64, from: u32) -> Option<u32> {
+    let Spot::In(t) = mesh.walk(mesh.leaving[from as usize], x) else { return None };
+    cavity.dig(mesh, x, t);
+    let free = cavity.rim.iter().all(|edge| {
+        let (a, b) = (mesh.place(edge.from), mesh.place(edge.to));
+        let square = (a[0] - x[0]).powi(2) + (a[1] - x[1]).powi(2);
+        square >= (FROM_VERTICES * size).powi(2)
+            && (edge.segment == NONE || distance_to_segment(x, a, b) >= FROM_SEGMENTS * size)
+    });
+    if free { cavity.fill(mesh, x, None) } else { None }
+}

@@ -81,7 +81,7 @@ pub(crate) fn check_cells<const D: usize>(
             let mean = |i: usize| v.iter().map(|v| points[v.index()][i] / per_cell as f64).sum();
             (0..D).map(mean).collect()
         };
-        if !(measure.abs() > least) {
+        if measure.abs() <= least {
             return Err(MeshError::DegenerateCell { cell, at: at(), measure });
         }
         if measure < 0.0 {

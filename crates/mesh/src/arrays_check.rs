@@ -199,7 +199,7 @@ mod tests {
             points.push([p[0] + 0.9e-13 * angle.cos(), p[1] + 0.9e-13 * angle.sin()]);
             let low = [points[1681][0].min(0.0), points[1681][1].min(0.0)];
             assert_eq!(repeated_point(&points, &low, 1e-13), Some((7 * k, 1681)));
-            points[1681] = [p[0] + 1e-12 * angle.cos(), p[1] + 1e-12 * angle.sin()];
+            points[1681] = [p[0] + 1.1e-13 * angle.cos(), p[1] + 1.1e-13 * angle.sin()];
             let low = [points[1681][0].min(0.0), points[1681][1].min(0.0)];
             assert_eq!(repeated_point(&points, &low, 1e-13), None);
         }
@@ -233,6 +233,9 @@ mod tests {
         let again = Arrays::new(mesh.points().to_vec(), &cells).mesh().unwrap();
         assert!(again.quality().smallest_cell.0 < 1e-8);
         assert_eq!(again.cell_count(), mesh.cell_count());
+        // Millimeters in a national grid, given in meters.
+        let far = vec![[4_100_000.0, 5_300_000.0], [4_100_000.001, 5_300_000.0], [4_100_000.0, 5_300_000.001]];
+        assert!(Arrays::new(far, &[[0, 1, 2]]).mesh().is_ok());
     }
 
     #[test]

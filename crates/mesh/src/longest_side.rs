@@ -29,9 +29,11 @@ mod tests {
         let points = [[0.0, 0.0], [3.0, 0.0], [0.0, 4.0], [3.0, 4.0 - 1e-15]];
         let v = |a, b, c| [VertexId(a), VertexId(b), VertexId(c)];
         assert_eq!(longest_side_first(&points, v(0, 1, 2)), v(1, 2, 0));
-        let isosceles = [[0.0, 0.0], [1.0, 0.0], [0.5, 2.0]];
-        for start in [v(0, 1, 2), v(1, 2, 0), v(2, 0, 1)] {
-            assert_eq!(longest_side_first(&isosceles, start), v(2, 0, 1));
+        for rounding in [0.0, 1e-15, -1e-15] {
+            let isosceles = [[0.0, 0.0], [1.0, 0.0], [0.5 + rounding, 2.0]];
+            for start in [v(0, 1, 2), v(1, 2, 0), v(2, 0, 1)] {
+                assert_eq!(longest_side_first(&isosceles, start), v(2, 0, 1));
+            }
         }
     }
 }

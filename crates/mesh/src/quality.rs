@@ -87,10 +87,12 @@ mod tests {
 
     #[test]
     fn sizes_of_intervals_and_where_they_are() {
-        let quality = Interval::graded(0.0, 15.0, 4, Toward::Start, 8.0).mesh().unwrap().quality();
-        assert_eq!(quality.smallest_angle, None);
-        assert_eq!((quality.smallest_cell.1, quality.largest_cell.1), (CellId(0), CellId(3)));
-        assert!((quality.smallest_cell.0 - 1.0).abs() < 1e-13);
-        assert!((quality.largest_cell.0 - 8.0).abs() < 1e-13);
+        for (toward, smallest, largest) in [(Toward::Start, 0, 3), (Toward::End, 3, 0)] {
+            let quality = Interval::graded(0.0, 15.0, 4, toward, 8.0).mesh().unwrap().quality();
+            assert_eq!(quality.smallest_angle, None);
+            assert_eq!((quality.smallest_cell.1, quality.largest_cell.1), (CellId(smallest), CellId(largest)));
+            assert!((quality.smallest_cell.0 - 1.0).abs() < 1e-13);
+            assert!((quality.largest_cell.0 - 8.0).abs() < 1e-13);
+        }
     }
 }

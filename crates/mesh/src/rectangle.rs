@@ -223,6 +223,13 @@ mod tests {
                 for (length, exact) in lengths.iter().zip([2.0, 2.0, 3.0, 3.0]) {
                     assert!((length - exact).abs() < 1e-13);
                 }
+                for (name, axis, exact) in [("left", 0, -1.0), ("right", 0, 2.0), ("bottom", 1, 2.0), ("top", 1, 4.0)] {
+                    let name = mesh.find_side(name).unwrap();
+                    for side in mesh.named_sides().iter().filter(|s| s.name == name) {
+                        let ends = mesh.side_vertices(side.cell, side.local);
+                        assert!(ends.iter().all(|v| mesh.point(*v)[axis] == exact));
+                    }
+                }
                 // Euler: vertices − edges + faces = 1 without the outer face.
                 let topology = mesh.topology();
                 assert_eq!(mesh.vertex_count() + mesh.cell_count(), topology.side_count() + 1);

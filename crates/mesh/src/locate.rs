@@ -13,7 +13,7 @@ type CellBox = GeomWithData<Rectangle<[f64; 2]>, u32>;
 /// Finds the cell that a point lies in, in a time that grows with the logarithm of the number of cells, however
 /// strongly the mesh is graded. Made by [`Mesh::locator`].
 ///
-/// It keeps a tree of the boxes around the cells: some 80 bytes a cell.
+/// It keeps a tree of the boxes around the cells: about 100 bytes a cell.
 ///
 /// ```
 /// use hypercircle_mesh::{CellId, Rectangle};

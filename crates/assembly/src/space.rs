@@ -13,12 +13,12 @@ use crate::AssemblyError;
 ///
 /// ```
 /// use hypercircle_assembly::Space;
-/// use hypercircle_mesh::Rectangle;
+/// use hypercircle_mesh::{Locator, Rectangle};
 /// let mesh = Rectangle::new([0.0, 0.0], [1.0, 1.0], [2, 2]).mesh()?;
 /// let space = Space::new(mesh.into(), 2)?;
 /// assert_eq!(space.unknown_count(), 25);
 /// let squares: Vec<f64> = space.positions().iter().map(|x| x[0] * x[0]).collect();
-/// let (cell, reference) = space.mesh().locator().find(&[0.3, 0.6])?;
+/// let (cell, reference) = Locator::new(space.mesh().clone()).find(&[0.3, 0.6])?;
 /// assert!((space.value(&squares, cell, &reference) - 0.09).abs() < 1e-15);
 /// # Ok::<(), Box<dyn std::error::Error>>(())
 /// ```
@@ -133,7 +133,13 @@ impl<const D: usize> Space<D> {
                 reference[i] += function[*u as usize] * g[i];
             }
         }
-        crate::block::pull_gradient(&crate::block::inverse(&self.mesh.jacobian(cell)).0, &reference)
+        self.real_gradient(cell, &reference)
+    }
+
+    /// J⁻ᵀ g: a gradient in real coordinates from one in reference coordinates.
+    #[must_use]
+    pub fn real_gradient(&self, cell: CellId, reference: &[f64; D]) -> [f64; D] {
+        crate::block::pull_gradient(&crate::block::inverse(&self.mesh.jacobian(cell)).0, reference)
     }
 }
 

@@ -5,7 +5,7 @@
 //! new mesh and its [`Relation`] to the old one. This crate knows nothing of unknowns, matrices or equations.
 //!
 //! ```
-//! use hypercircle_mesh::{CellId, Rectangle};
+//! use hypercircle_mesh::{CellId, Locator, Rectangle};
 //! let plate = Rectangle::new([0.0, 0.0], [2.0, 1.0], [8, 4]).region("steel").mesh()?;
 //! // Refine the cells along the left side.
 //! let left = plate.find_side("left")?;
@@ -13,7 +13,7 @@
 //! let (finer, relation) = plate.bisect(&marked)?;
 //! assert!((finer.measure() - 2.0).abs() < 1e-14);
 //! // Which cell is here, and which one was it a part of?
-//! let (cell, _) = finer.locator().find(&[0.01, 0.3])?;
+//! let (cell, _) = Locator::new(finer.into()).find(&[0.01, 0.3])?;
 //! assert!(relation.is_cut(relation.parent(cell)));
 //! # Ok::<(), hypercircle_mesh::MeshError>(())
 //! ```

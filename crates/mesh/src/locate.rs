@@ -1,5 +1,7 @@
 //! Which cell a point lies in.
 
+use std::sync::Arc;
+
 use rstar::RTree;
 use rstar::primitives::{GeomWithData, Rectangle};
 
@@ -11,14 +13,15 @@ const REACH: f64 = 1e-10;
 type CellBox = GeomWithData<Rectangle<[f64; 2]>, u32>;
 
 /// Finds the cell that a point lies in, in a time that grows with the logarithm of the number of cells, however
-/// strongly the mesh is graded. Made by [`Mesh::locator`].
+/// strongly the mesh is graded.
 ///
 /// It keeps a tree of the boxes around the cells: about 100 bytes a cell.
 ///
 /// ```
-/// use hypercircle_mesh::{CellId, Rectangle};
-/// let mesh = Rectangle::new([0.0, 0.0], [1.0, 1.0], [1, 1]).mesh()?;
-/// let locator = mesh.locator();
+/// use std::sync::Arc;
+/// use hypercircle_mesh::{CellId, Locator, Rectangle};
+/// let mesh = Arc::new(Rectangle::new([0.0, 0.0], [1.0, 1.0], [1, 1]).mesh()?);
+/// let locator = Locator::new(mesh.clone());
 /// let (cell, reference) = locator.find(&[0.5, 0.25])?;
 /// assert_eq!(cell, CellId(0));
 /// assert_eq!(mesh.place(cell, &reference), [0.5, 0.25]);
@@ -26,23 +29,23 @@ type CellBox = GeomWithData<Rectangle<[f64; 2]>, u32>;
 /// # Ok::<(), hypercircle_mesh::MeshError>(())
 /// ```
 #[derive(Debug, Clone)]
-pub struct Locator<'m, const D: usize> {
-    mesh: &'m Mesh<D>,
+pub struct Locator<const D: usize> {
+    mesh: Arc<Mesh<D>>,
     tree: RTree<CellBox>,
 }
 
-impl<const D: usize> Mesh<D> {
-    /// Prepares the search for points.
+impl<const D: usize> Locator<D> {
+    /// Prepares the search for points of a mesh.
     ///
     /// # Source
     /// A. Guttman, R-trees: a dynamic index structure for spatial searching (1984), packed at once.
     #[must_use]
-    pub fn locator(&self) -> Locator<'_, D> {
-        let boxes = self.cells().map(|cell| {
-            let reach = REACH * self.cell_diameter(cell);
+    pub fn new(mesh: Arc<Mesh<D>>) -> Self {
+        let boxes = mesh.cells().map(|cell| {
+            let reach = REACH * mesh.cell_diameter(cell);
             let (mut low, mut high) = ([f64::INFINITY; D], [f64::NEG_INFINITY; D]);
-            for v in self.cell_vertices(cell) {
-                let p = self.point(*v);
+            for v in mesh.cell_vertices(cell) {
+                let p = mesh.point(*v);
                 for i in 0..D {
                     low[i] = low[i].min(p[i] - reach);
                     high[i] = high[i].max(p[i] + reach);
@@ -50,11 +53,10 @@ impl<const D: usize> Mesh<D> {
             }
             CellBox::new(Rectangle::from_corners(in_plane(&low), in_plane(&high)), cell.0)
         });
-        Locator { mesh: self, tree: RTree::bulk_load(boxes.collect()) }
+        let tree = RTree::bulk_load(boxes.collect());
+        Self { mesh, tree }
     }
-}
 
-impl<const D: usize> Locator<'_, D> {
     /// The cell in which a point lies, and where: the reference coordinates, which are never outside the reference
     /// cell.
     ///
@@ -136,7 +138,7 @@ mod tests {
             let around = mesh.topology().cells_around(VertexId(0)).to_vec();
             mesh = mesh.bisect(&around).unwrap().0;
         }
-        let locator = mesh.locator();
+        let locator = Locator::new(Arc::new(mesh.clone()));
         for cell in mesh.cells() {
             let (found, at) = locator.find(&mesh.cell_center(cell)).unwrap();
             assert_eq!(found, cell);
@@ -153,7 +155,7 @@ mod tests {
     #[test]
     fn nearly_outside_is_moved_in_and_outside_is_told() {
         let mesh = Arrays::new(vec![[0.0, 0.0], [2.0, 0.0], [0.0, 1.0]], &[[0, 1, 2]]).mesh().unwrap();
-        let locator = mesh.locator();
+        let locator = Locator::new(Arc::new(mesh.clone()));
         for near in [[1.0, -1e-11], [-1e-11, 0.5], [1.0 + 1e-11, 0.5 + 1e-11], [2.0 + 1e-11, -1e-11]] {
             let (_, at) = locator.find(&near).unwrap();
             assert!(at[0] >= 0.0 && at[1] >= 0.0 && at[0] + at[1] <= 1.0 + f64::EPSILON, "{at:?}");
@@ -170,7 +172,7 @@ mod tests {
     #[test]
     fn points_on_a_graded_line_are_found() {
         let mesh = Interval::graded(0.0, 1.0, 200, Toward::Start, 1e12).mesh().unwrap();
-        let locator = mesh.locator();
+        let locator = Locator::new(Arc::new(mesh.clone()));
         for cell in mesh.cells() {
             let (found, at) = locator.find(&mesh.place(cell, &[0.25])).unwrap();
             assert_eq!(found, cell);

@@ -224,3 +224,56 @@ impl Builder<'_> {
         Arrangement { points, edges, tolerance: self.tolerance }
     }
 }
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use crate::outline::loops::{polygon, rectangle};
+    use crate::outline::{Area, Polygon};
+
+    fn stated(loops: &[(&str, Polygon)]) -> Vec<Stated> {
+        loops
+            .iter()
+            .map(|(name, l)| Stated { name: (*name).to_owned(), area: Area::from(l.clone()), hole: *name == "hole" })
+            .collect()
+    }
+
+    #[test]
+    fn a_shared_border_is_one_edge_of_both() {
+        let both = stated(&[("a", rectangle((0.0, 0.0), (1.0, 1.0))), ("b", rectangle((1.0, 0.0), (2.0, 1.0)))]);
+        let arrangement = arrange(&both, &[]).unwrap();
+        assert_eq!((arrangement.points.len(), arrangement.edges.len()), (6, 7));
+        let shared: Vec<_> = arrangement.edges.iter().filter(|e| e.areas == [0, 1]).collect();
+        assert_eq!(shared.len(), 1);
+        assert!(shared[0].ends.iter().all(|p| arrangement.points[*p as usize][0] == 1.0));
+    }
+
+    #[test]
+    fn corners_and_marks_in_the_middle_of_a_side_split_it() {
+        let slanted = polygon(&[(0.0, 0.0), (3.0, 1.0), (0.0, 1.0)]);
+        let beside = polygon(&[(0.3, 0.1), (0.9, 0.3), (0.9, 0.1)]);
+        let arrangement = arrange(&stated(&[("a", slanted), ("b", beside)]), &[[2.1, 0.7], [9.0, 9.0]]).unwrap();
+        assert_eq!(arrangement.edges.iter().filter(|e| e.areas == [0, 1]).count(), 1);
+        assert_eq!((arrangement.points.len(), arrangement.edges.len()), (3 + 3 + 1, 2 + 4 + 2));
+    }
+
+    #[test]
+    fn borders_of_earlier_regions_may_be_crossed_and_their_rim_not() {
+        let (a, b) = (rectangle((0.0, 0.0), (1.0, 1.0)), rectangle((1.0, 0.0), (2.0, 1.0)));
+        let anchor = rectangle((0.5, 0.4), (1.5, 0.6));
+        let arrangement = arrange(&stated(&[("a", a.clone()), ("b", b), ("c", anchor.clone())]), &[]).unwrap();
+        assert_eq!((arrangement.points.len(), arrangement.edges.len()), (6 + 4 + 2, 7 + 2 + 4 + 2));
+        let crossing = arrange(&stated(&[("a", a.clone()), ("c", anchor.clone())]), &[]).unwrap_err();
+        let MeshError::CrossingLoops { first, second, at } = crossing else { panic!("{crossing}") };
+        assert_eq!((first.as_str(), second.as_str(), at[0]), ("a", "c", 1.0));
+        // A hole counts as stated last.
+        let crossing = arrange(&stated(&[("hole", anchor), ("a", a)]), &[]).unwrap_err();
+        assert!(matches!(crossing, MeshError::CrossingLoops { second, .. } if second == "hole"));
+    }
+
+    #[test]
+    fn extents_out_of_all_measure_are_refused() {
+        let tiny = stated(&[("a", rectangle((0.0, 0.0), (1e-40, 1e-40)))]);
+        assert!(matches!(arrange(&tiny, &[]), Err(MeshError::NotPositive { value, .. }) if value == 1e-40));
+    }
+}

@@ -181,3 +181,76 @@ impl Cavity {
         Some(vertex)
     }
 }
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    /// A square cut by a segment along x = 1.
+    fn two_halves() -> Triangulation {
+        let points = vec![[0.0, 0.0], [1.0, 0.0], [2.0, 0.0], [2.0, 1.0], [1.0, 1.0], [0.0, 1.0]];
+        let mut mesh =
+            Triangulation::constrained(points, &[[0, 1], [1, 2], [2, 3], [3, 4], [4, 5], [5, 0], [1, 4]]).unwrap();
+        mesh.region.fill(7);
+        mesh
+    }
+
+    fn check(mesh: &Triangulation, triangles: usize) {
+        assert_eq!(mesh.triangle_count(), triangles);
+        for h in 0..3 * triangles as u32 {
+            let [a, b, c] = mesh.corners(h / 3);
+            assert!(orientation(a, b, c) > 0.0);
+            let mate = mesh.mate[h as usize];
+            assert_eq!(mate == NONE, mesh.mate.iter().all(|m| *m != h));
+            if mate != NONE {
+                assert_eq!((mesh.from(mate), mesh.to(mate)), (mesh.to(h), mesh.from(h)));
+                assert_eq!(mesh.segment[mate as usize], mesh.segment[h as usize]);
+            } else {
+                assert_ne!(mesh.segment[h as usize], NONE);
+            }
+            assert_eq!(mesh.from(mesh.leaving[mesh.from(h) as usize]), mesh.from(h));
+        }
+    }
+
+    #[test]
+    fn the_walk_ends_in_the_triangle_or_at_a_segment() {
+        let mesh = two_halves();
+        let Spot::In(t) = mesh.walk(mesh.leaving[0], [0.7, 0.9]) else { panic!() };
+        let [a, b, c] = mesh.corners(t);
+        assert!([[a, b], [b, c], [c, a]].iter().all(|[p, q]| orientation(*p, *q, [0.7, 0.9]) >= 0.0));
+        let Spot::Behind(h) = mesh.walk(mesh.leaving[0], [1.9, 0.6]) else { panic!() };
+        assert_eq!(mesh.segment[h as usize], 6);
+    }
+
+    #[test]
+    fn vertices_inside_on_a_segment_and_on_the_rim() {
+        let mut mesh = two_halves();
+        let mut cavity = Cavity::default();
+        let Spot::In(t) = mesh.walk(mesh.leaving[0], [0.4, 0.4]) else { panic!() };
+        cavity.dig(&mesh, [0.4, 0.4], t);
+        assert_eq!(cavity.fill(&mut mesh, [0.4, 0.4], None), Some(6));
+        check(&mesh, 6);
+        let inner = mesh.edge(1, 4).unwrap();
+        cavity.dig_at_segment(&mesh, [1.0, 0.5], inner);
+        assert_eq!(cavity.fill(&mut mesh, [1.0, 0.5], Some(inner)), Some(7));
+        check(&mesh, 8);
+        assert_eq!(mesh.segment.iter().filter(|s| **s == 6).count(), 4);
+        let rim = mesh.edge(1, 2).unwrap();
+        cavity.dig_at_segment(&mesh, [1.5, 0.0], rim);
+        assert_eq!(cavity.fill(&mut mesh, [1.5, 0.0], Some(rim)), Some(8));
+        check(&mesh, 9);
+        assert_eq!(mesh.segment.iter().filter(|s| **s == 1).count(), 2);
+        assert!(mesh.region.iter().all(|r| *r == 7));
+    }
+
+    #[test]
+    fn a_place_already_taken_changes_nothing() {
+        let mut mesh = two_halves();
+        let before = format!("{mesh:?}");
+        let mut cavity = Cavity::default();
+        let Spot::In(t) = mesh.walk(mesh.leaving[0], [0.5, 0.5]) else { panic!() };
+        cavity.dig(&mesh, [1.0, 1.0], t);
+        assert_eq!(cavity.fill(&mut mesh, [1.0, 1.0], None), None);
+        assert_eq!(format!("{mesh:?}"), before);
+    }
+}

@@ -28,6 +28,21 @@ impl Polygon {
         self.sides().map(|[a, b]| (shifted(&a), shifted(&b))).map(|(a, b)| 0.5 * (a[0] * b[1] - b[0] * a[1])).sum()
     }
 
+    /// The area inside this loop and outside another one within it.
+    ///
+    /// ```
+    /// use hypercircle_mesh::{Outline, rectangle, regular_polygon};
+    /// let mut pipe = Outline::new();
+    /// pipe.region("wall", regular_polygon((0.0, 0.0), 0.1, 24).without(rectangle((-0.05, -0.05), (0.05, 0.05))))?;
+    /// let area = 12.0 * (std::f64::consts::PI / 12.0).sin() * 0.01 - 0.01;
+    /// assert!((pipe.mesh(0.02)?.measure() - area).abs() < 1e-15);
+    /// # Ok::<(), hypercircle_mesh::MeshError>(())
+    /// ```
+    #[must_use]
+    pub fn without(self, opening: Self) -> Area {
+        Area::from(self).without(opening)
+    }
+
     /// The sides in order.
     pub(super) fn sides(&self) -> impl Iterator<Item = [[f64; 2]; 2]> + '_ {
         let n = self.corners.len();
@@ -80,6 +95,13 @@ impl From<Polygon> for Area {
 }
 
 impl Area {
+    /// This area less the inside of one more loop. The opening is a hole without name unless another region fills it.
+    #[must_use]
+    pub fn without(mut self, opening: Polygon) -> Self {
+        self.openings.push(opening);
+        self
+    }
+
     /// All loops, the outer one first.
     pub(super) fn loops(&self) -> impl Iterator<Item = &Polygon> {
         std::iter::once(&self.outer).chain(&self.openings)
@@ -141,7 +163,7 @@ impl LoopFault {
             Self::CrossesItself => "put the corners in order along the border, and state parts that only touch singly",
             Self::NoArea => "give corners that are not all on one line",
             Self::Outside => "move it within the regions or state the region around it",
-            Self::Hidden => "state it after what it lies on, or leave it out",
+            Self::Hidden => "state it after what it lies on and clear of holes, or leave it out",
         }
     }
 }
@@ -280,4 +302,69 @@ fn check_simple(name: &str, polygon: &Polygon, tolerance: f64) -> Result<(), Mes
         }
     }
     Ok(())
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[track_caller]
+    fn fault_of(corners: &[(f64, f64)]) -> (LoopFault, Vec<f64>) {
+        match Area::from(polygon(corners)).check("plate") {
+            Err(MeshError::Loop { name, fault, at }) if name == "plate" => (fault, at),
+            other => panic!("{other:?}"),
+        }
+    }
+
+    #[test]
+    fn each_fault_has_its_name_and_place() {
+        assert_eq!(fault_of(&[]).0, LoopFault::TooFewCorners);
+        assert_eq!(fault_of(&[(1.0, 2.0), (3.0, 4.0), (1.0, 2.0)]), (LoopFault::TooFewCorners, vec![1.0, 2.0]));
+        assert_eq!(fault_of(&[(0.0, 0.0), (1.0, f64::NAN), (0.0, 1.0)]).0, LoopFault::NotFinite);
+        assert_eq!(fault_of(&[(0.0, 0.0), (f64::INFINITY, 1.0), (0.0, 1.0)]).1[0], f64::INFINITY);
+        let repeated = [(0.0, 0.0), (1.0, 0.0), (1.0, 0.0), (0.0, 1.0)];
+        assert_eq!(fault_of(&repeated), (LoopFault::RepeatedCorner, vec![1.0, 0.0]));
+        let nearly = [(0.0, 0.0), (1.0, 0.0), (1.0, 1e-14), (0.0, 1.0)];
+        assert_eq!(fault_of(&nearly), (LoopFault::RepeatedCorner, vec![1.0, 0.0]));
+        let line = [(0.0, 0.0), (1.0, 1.0), (3.0, 3.0), (2.0, 2.0)];
+        assert_eq!(fault_of(&line), (LoopFault::NoArea, vec![0.0, 0.0]));
+        let bow = [(0.0, 0.0), (1.0, 1.0), (1.0, 0.0), (0.0, 1.0)];
+        assert_eq!(fault_of(&bow), (LoopFault::CrossesItself, vec![0.5, 0.5]));
+        let spike = [(0.0, 0.0), (2.0, 0.0), (2.0, 1.0), (2.0, 0.5), (0.0, 0.5)];
+        assert_eq!(fault_of(&spike), (LoopFault::CrossesItself, vec![2.0, 0.5]));
+        let touching = [(0.0, 0.0), (2.0, 0.0), (2.0, 2.0), (1.0, 0.0), (0.0, 2.0)];
+        assert_eq!(fault_of(&touching), (LoopFault::CrossesItself, vec![1.0, 0.0]));
+        let eight = [(0.0, 0.0), (1.0, 1.0), (2.0, 0.0), (2.0, 2.0), (1.0, 1.0), (0.0, 2.0)];
+        assert_eq!(fault_of(&eight), (LoopFault::RepeatedCorner, vec![1.0, 1.0]));
+    }
+
+    #[test]
+    fn openings_lie_inside() {
+        let plate = || rectangle((0.0, 0.0), (2.0, 1.0));
+        assert_eq!(plate().without(rectangle((0.5, 0.0), (1.0, 0.5))).check("plate"), Ok(()));
+        let beside = plate().without(rectangle((1.5, 0.5), (2.5, 0.75))).check("plate");
+        assert_eq!(beside, Err(fault("plate", LoopFault::Outside, [2.5, 0.5])));
+    }
+
+    #[test]
+    fn closing_corner_orientation_and_area() {
+        let open = [(0.0, 0.0), (2.0, 0.0), (2.0, 3.0)];
+        assert_eq!(polygon(&open), polygon(&[open[0], open[1], open[2], open[0]]));
+        assert_eq!(polygon(&open).signed_area(), 3.0);
+        assert_eq!(polygon(&[open[2], open[1], open[0]]).signed_area(), -3.0);
+        assert_eq!(rectangle((1.0, 1.0), (-1.0, 4.0)).signed_area(), -6.0);
+        assert!((regular_polygon((5.0, 5.0), 2.0, 4).signed_area() - 8.0).abs() < 1e-14);
+    }
+
+    #[test]
+    fn points_in_areas_and_crossing_segments() {
+        let frame = rectangle((0.0, 0.0), (3.0, 3.0)).without(rectangle((1.0, 1.0), (2.0, 2.0)));
+        assert!(frame.contains([0.5, 1.5]) && frame.contains([1.5, 2.5]));
+        assert!(!frame.contains([1.5, 1.5]) && !frame.contains([3.5, 1.5]));
+        let (p, q) = ([[0.0, 0.0], [2.0, 2.0]], [[0.0, 1.0], [1.0, 0.0]]);
+        assert!(cross(p, q));
+        assert_eq!(crossing_point(p, q), [0.5, 0.5]);
+        assert!(!cross(p, [[1.0, 1.0], [2.0, 0.0]]), "touching is no crossing");
+        assert_eq!(distance_to_segment([3.0, 2.0], p[0], p[1]), 1.0);
+    }
 }

@@ -18,10 +18,12 @@ use crate::MeshError;
 
 /// Triangles with an angle smaller than this (in degrees) get a new vertex.
 const POINTED: f64 = 28.0;
-/// Longest side allowed, in sizes.
-pub(super) const TOO_LONG: f64 = 1.4;
+/// Longest side allowed, in sizes: half a square of the size wanted is just good.
+const TOO_LONG: f64 = 1.45;
 /// Segments that meet at less than this angle (cos 60°) are split on circles around the common end.
 const SMALL_ANGLE_COSINE: f64 = 0.5 + 1e-9;
+/// Triangles between segments that meet at less than this angle (cos 30°) may keep it.
+const GIVEN_ANGLE_COSINE: f64 = 0.866;
 /// Queues of triangles, the most pointed first, the merely large last.
 const QUEUES: usize = 9;
 
@@ -31,52 +33,39 @@ type Ends = [u32; 2];
 pub(super) struct Refinement<'a> {
     mesh: Triangulation,
     cavity: Cavity,
-    sizes: &'a SizeField,
-    borders: &'a [Border],
-    /// The border each vertex lies on, [`NONE`] for corners (the first `corner_count` vertices) and inner vertices.
-    border_of: Vec<u32>,
-    corner_count: u32,
+    given: Given<'a>,
     /// Whether a corner has borders that meet at a small angle.
     sharp: Vec<bool>,
-    /// Segments shorter than this are not split for the sake of angles.
-    shortest: f64,
-    limit: usize,
     crowded: VecDeque<Ends>,
     bad: Vec<VecDeque<(u32, [u32; 3])>>,
     sine_squared: f64,
     off_center: f64,
 }
 
-/// What a triangle needs.
-enum Need {
-    Nothing,
-    /// With its urgency.
-    Vertex(usize),
+/// What refinement has to know beside the triangles.
+#[derive(Debug)]
+pub(super) struct Given<'a> {
+    pub(super) sizes: &'a SizeField,
+    pub(super) borders: &'a [Border],
+    /// The border each vertex lies on; [`NONE`] for ends of borders, which come first, and for inner vertices.
+    pub(super) border_of: Vec<u32>,
+    /// How many vertices are ends of borders.
+    pub(super) corner_count: u32,
+    /// Segments shorter than this are not split any more.
+    pub(super) shortest: f64,
+    /// Cells at most.
+    pub(super) limit: usize,
 }
 
 impl<'a> Refinement<'a> {
-    /// `border_of` tells for each vertex the border it lies on; the first `corner_count` vertices are ends of borders.
-    pub(super) fn new(
-        mesh: Triangulation,
-        cavity: Cavity,
-        sizes: &'a SizeField,
-        borders: &'a [Border],
-        (border_of, corner_count): (Vec<u32>, u32),
-        (shortest, limit): (f64, usize),
-    ) -> Self {
+    pub(super) fn new(mesh: Triangulation, cavity: Cavity, given: Given<'a>) -> Self {
         let sine = POINTED.to_radians().sin();
         let ratio = 0.5 / sine; // circumradius over shortest side
-        let sharp = sharp_corners(&mesh, borders, corner_count);
         Self {
+            sharp: sharp_corners(&mesh, given.borders, given.corner_count),
             mesh,
             cavity,
-            sizes,
-            borders,
-            border_of,
-            corner_count,
-            sharp,
-            shortest,
-            limit,
+            given,
             crowded: VecDeque::new(),
             bad: (0..QUEUES).map(|_| VecDeque::new()).collect(),
             sine_squared: sine * sine,
@@ -94,8 +83,8 @@ impl<'a> Refinement<'a> {
             self.note_if_bad(t);
         }
         loop {
-            if self.mesh.triangle_count() > self.limit {
-                return Err(too_many(self.mesh.triangle_count() as f64, self.limit));
+            if self.mesh.triangle_count() > self.given.limit {
+                return Err(too_many(self.mesh.triangle_count() as f64, self.given.limit));
             }
             if let Some([a, b]) = self.crowded.pop_front() {
                 if let Some(h) = self.segment(a, b).filter(|h| self.is_crowded(*h)) {
@@ -138,7 +127,7 @@ impl<'a> Refinement<'a> {
     }
 
     fn note_if_bad(&mut self, t: u32) {
-        if let Need::Vertex(urgency) = self.need(t) {
+        if let Some(urgency) = self.urgency(t) {
             let note = (t, self.vertices(t));
             self.bad[urgency].push_back(note);
         }
@@ -149,10 +138,10 @@ impl<'a> Refinement<'a> {
         let (a, b) = (self.mesh.from(h), self.mesh.to(h));
         let (p, q) = (self.mesh.place(a), self.mesh.place(b));
         let length = distance(p, q);
-        if length < self.shortest {
+        if length < self.given.shortest {
             return false;
         }
-        let is_sharp = |v: u32| v < self.corner_count && self.sharp[v as usize];
+        let is_sharp = |v: u32| v < self.given.corner_count && self.sharp[v as usize];
         let shell = (0.5 * length).log2().round().exp2();
         let x = match (is_sharp(a), is_sharp(b)) {
             (true, false) => between(p, q, shell / length),
@@ -162,8 +151,8 @@ impl<'a> Refinement<'a> {
         let border = self.mesh.segment[h as usize];
         self.cavity.dig_at_segment(&self.mesh, x, h);
         let Some(vertex) = self.cavity.fill(&mut self.mesh, x, Some(h)) else { return false };
-        self.border_of.push(border);
-        debug_assert_eq!(self.border_of.len() as u32, vertex + 1);
+        self.given.border_of.push(border);
+        debug_assert_eq!(self.given.border_of.len() as u32, vertex + 1);
         self.note_made();
         true
     }
@@ -198,7 +187,7 @@ impl<'a> Refinement<'a> {
         };
         if blocking.is_empty() {
             if self.cavity.fill(&mut self.mesh, x, None).is_some() {
-                self.border_of.push(NONE);
+                self.given.border_of.push(NONE);
                 self.note_made();
             }
             return;
@@ -232,20 +221,20 @@ impl<'a> Refinement<'a> {
         (3 * t + (longest as u32 + 2) % 3, [p[0] + x[0], p[1] + x[1]])
     }
 
-    fn need(&self, t: u32) -> Need {
+    /// The queue for a triangle that needs a vertex.
+    fn urgency(&self, t: u32) -> Option<usize> {
         let corners = self.mesh.corners(t);
         let (shortest, longest) = extremes(corners);
-        let square = |i: usize| dot(corners[(i + 1) % 3], corners[(i + 1) % 3], corners[i]);
+        let square = |i: usize| square(corners[(i + 1) % 3], corners[i % 3]);
         let [a, b, c] = corners;
         let cross = (b[0] - a[0]) * (c[1] - a[1]) - (b[1] - a[1]) * (c[0] - a[0]);
-        let (second, third) = (square((shortest + 1) % 3), square((shortest + 2) % 3));
-        let sine_squared = cross * cross / (second * third);
+        let sine_squared = cross * cross / (square(shortest + 1) * square(shortest + 2));
         if sine_squared < self.sine_squared && !self.is_given(t, shortest) {
-            return Need::Vertex((sine_squared / self.sine_squared * (QUEUES - 1) as f64) as usize % QUEUES);
+            return Some((sine_squared / self.sine_squared * (QUEUES - 1) as f64) as usize);
         }
         let middle = [(a[0] + b[0] + c[0]) / 3.0, (a[1] + b[1] + c[1]) / 3.0];
-        let size = self.sizes.at(middle, self.mesh.region[t as usize]);
-        if square(longest) > (TOO_LONG * size).powi(2) { Need::Vertex(QUEUES - 1) } else { Need::Nothing }
+        let size = self.given.sizes.at(middle, self.mesh.region[t as usize]);
+        (square(longest) > (TOO_LONG * size).powi(2)).then_some(QUEUES - 1)
     }
 
     /// Whether the smallest angle, opposite to the shortest side, is the outline's own: the side joins two borders that
@@ -254,19 +243,20 @@ impl<'a> Refinement<'a> {
         let h = 3 * t + shortest as u32;
         let [u, v, apex] = [0, 1, 2].map(|i| self.mesh.origin[3 * t as usize + (shortest + i) % 3]);
         let segment = |h: u32| self.mesh.segment[h as usize] != NONE;
-        if segment(next(h)) && segment(previous(h)) && apex < self.corner_count {
+        if segment(next(h)) && segment(previous(h)) && apex < self.given.corner_count {
             return true;
         }
-        let (first, second) = (self.border_of[u as usize], self.border_of[v as usize]);
+        let (first, second) = (self.given.border_of[u as usize], self.given.border_of[v as usize]);
         if first == NONE || second == NONE || first == second {
             return false;
         }
-        let (first, second) = (self.borders[first as usize].ends, self.borders[second as usize].ends);
+        let (first, second) = (self.given.borders[first as usize].ends, self.given.borders[second as usize].ends);
         let Some(corner) = first.into_iter().find(|c| second.contains(c) && self.sharp[*c as usize]) else {
             return false;
         };
-        let [near, far] = [u, v].map(|w| distance(self.mesh.place(w), self.mesh.place(corner)));
-        (near - far).abs() < 1e-3 * near
+        let [center, p, q] = [corner, u, v].map(|w| self.mesh.place(w));
+        let (near, far) = (distance(p, center), distance(q, center));
+        (near - far).abs() < 1e-3 * near && dot(p, q, center) > GIVEN_ANGLE_COSINE * near * far
     }
 }
 
@@ -288,6 +278,10 @@ fn sharp_corners(mesh: &Triangulation, borders: &[Border], corner_count: u32) ->
     directions.iter().map(sharp).collect()
 }
 
+fn square(a: [f64; 2], b: [f64; 2]) -> f64 {
+    dot(a, a, b)
+}
+
 /// (a − x) · (b − x)
 fn dot(a: [f64; 2], b: [f64; 2], x: [f64; 2]) -> f64 {
     (a[0] - x[0]) * (b[0] - x[0]) + (a[1] - x[1]) * (b[1] - x[1])
@@ -303,8 +297,7 @@ fn between(a: [f64; 2], b: [f64; 2], t: f64) -> [f64; 2] {
 
 /// Numbers of the shortest and the longest side of a triangle.
 fn extremes(corners: [[f64; 2]; 3]) -> (usize, usize) {
-    let square = |i: usize| dot(corners[(i + 1) % 3], corners[(i + 1) % 3], corners[i]);
-    let lengths = [square(0), square(1), square(2)];
+    let lengths = [0, 1, 2].map(|i| square(corners[(i + 1) % 3], corners[i]));
     let shortest = (1..3).fold(0, |best, i| if lengths[i] < lengths[best] { i } else { best });
     let longest = (1..3).fold(0, |best, i| if lengths[i] > lengths[best] { i } else { best });
     (shortest, longest)

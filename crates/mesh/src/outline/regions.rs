@@ -204,19 +204,16 @@ fn compact(borders: &mut [Border], points: &[[f64; 2]]) -> Vec<[f64; 2]> {
     kept
 }
 
-/// Floods the regions from the borders' hands over a triangulation of their pieces; `pieces[segment]` is the border
-/// and the first end of each piece. Afterwards segments are border numbers.
-pub(super) fn flood(triangles: &mut Triangulation, borders: &[Border], pieces: &[(u32, u32)]) {
+/// Floods the regions over a triangulation of the plan, from the hands of its borders.
+pub(super) fn flood(triangles: &mut Triangulation, borders: &[Border]) {
     let mut stack = Vec::new();
     for h in 0..triangles.mate.len() as u32 {
         let segment = triangles.segment[h as usize];
         if segment == NONE {
             continue;
         }
-        let (border, first) = pieces[segment as usize];
-        triangles.segment[h as usize] = border;
-        let Border { left, right, .. } = borders[border as usize];
-        let region = if triangles.from(h) == first { left } else { right };
+        let Border { ends, left, right, .. } = borders[segment as usize];
+        let region = if triangles.from(h) == ends[0] { left } else { right };
         if region != NONE && triangles.region[h as usize / 3] == NONE {
             triangles.region[h as usize / 3] = region;
             stack.push(h / 3);

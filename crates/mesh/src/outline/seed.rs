@@ -11,7 +11,11 @@ const FROM_VERTICES: f64 = 0.72;
 /// Lattice points keep this distance from segments, in sizes.
 const FROM_SEGMENTS: f64 = 0.6;
 
-/// A triangle before seeding: it is convex and crossed by no segment, so its seeds can be reached from one another.
+/// Every 64th row and column first, then every 8th, then all: the large triangles at the start soon become many small
+/// ones, in which ways are short and cavities small.
+const STRIDES: [i64; 3] = [64, 8, 1];
+
+/// A triangle before a round of seeding: it is convex and crossed by no segment, so its seeds can be reached from one another.
 struct Field {
     corners: [[f64; 2]; 3],
     vertex: u32,
@@ -20,34 +24,40 @@ struct Field {
 
 /// Puts lattice points into all triangles that are large against the wanted size. `low` anchors the lattice.
 pub(super) fn seed(mesh: &mut Triangulation, cavity: &mut Cavity, sizes: &SizeField, low: [f64; 2]) {
-    let fields: Vec<Field> = (0..mesh.triangle_count() as u32)
-        .map(|t| Field {
-            corners: mesh.corners(t),
-            vertex: mesh.origin[3 * t as usize],
-            region: mesh.region[t as usize],
-        })
-        .filter(|f| f.region != NONE)
-        .collect();
-    for field in fields {
-        seed_field(mesh, cavity, sizes, low, &field);
+    for stride in STRIDES {
+        let fields: Vec<Field> = (0..mesh.triangle_count() as u32).map(|t| field(mesh, t)).collect();
+        for field in fields {
+            seed_field(mesh, cavity, sizes, low, stride, &field);
+        }
     }
 }
 
-fn seed_field(mesh: &mut Triangulation, cavity: &mut Cavity, sizes: &SizeField, low: [f64; 2], field: &Field) {
+fn field(mesh: &Triangulation, t: u32) -> Field {
+    Field { corners: mesh.corners(t), vertex: mesh.origin[3 * t as usize], region: mesh.region[t as usize] }
+}
+
+fn seed_field(
+    mesh: &mut Triangulation,
+    cavity: &mut Cavity,
+    sizes: &SizeField,
+    low: [f64; 2],
+    stride: i64,
+    field: &Field,
+) {
     let size = sizes.of_region(field.region);
     let height = 0.75_f64.sqrt() * size;
     let bottom = field.corners.iter().map(|c| c[1]).fold(f64::INFINITY, f64::min);
     let top = field.corners.iter().map(|c| c[1]).fold(f64::NEG_INFINITY, f64::max);
-    let (first, last) = (((bottom - low[1]) / height).ceil() as i64, ((top - low[1]) / height).floor() as i64);
+    let steps = |from: f64, to: f64, step: f64| {
+        let step = step * stride as f64;
+        ((from / step).ceil() as i64..=(to / step).floor() as i64).map(|i| i * stride)
+    };
     let mut from = field.vertex;
-    for row in first..=last {
+    for row in steps(bottom - low[1], top - low[1], height) {
         let y = low[1] + row as f64 * height;
         let Some((left, right)) = chord(&field.corners, y) else { continue };
         let shift = low[0] + if row % 2 == 0 { 0.0 } else { 0.5 * size };
-        let (begin, end) = (((left - shift) / size).ceil() as i64, ((right - shift) / size).floor() as i64);
-        for k in begin..=end {
-            // There and back again, so that each point is near the one before.
-            let column = if row % 2 == 0 { k } else { begin + end - k };
+        for column in steps(left - shift, right - shift, size) {
             let x = [shift + column as f64 * size, y];
             if sizes.by_sources(x) >= size {
                 if let Some(vertex) = try_seed(mesh, cavity, x, size, from) {
@@ -82,4 +92,31 @@ fn try_seed(mesh: &mut Triangulation, cavity: &mut Cavity, x: [f64; 2], size: f6
             && (edge.segment == NONE || distance_to_segment(x, a, b) >= FROM_SEGMENTS * size)
     });
     if free { cavity.fill(mesh, x, None) } else { None }
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn a_chord_ends_on_the_sides() {
+        let corners = [[0.0, 0.0], [2.0, 0.0], [0.0, 2.0]];
+        assert_eq!(chord(&corners, 0.5), Some((0.0, 1.5)));
+        assert_eq!(chord(&corners, 2.5), None);
+    }
+
+    #[test]
+    fn seeds_stand_on_the_lattice_clear_of_the_rim() {
+        let square = vec![[0.0, 0.0], [10.0, 0.0], [10.0, 10.0], [0.0, 10.0]];
+        let mut mesh = Triangulation::constrained(square, &[[0, 1], [1, 2], [2, 3], [3, 0]]).unwrap();
+        mesh.region.fill(0);
+        seed(&mut mesh, &mut Cavity::default(), &SizeField::new(vec![1.0], Vec::new(), [0.0; 2], 10.0), [0.0; 2]);
+        let height = 0.75_f64.sqrt();
+        assert!((85..=95).contains(&(mesh.points.len() - 4)), "{}", mesh.points.len());
+        for p in &mesh.points[4..] {
+            let row = (p[1] / height).round();
+            assert!((p[1] - row * height).abs() < 1e-12);
+            assert!(p.iter().all(|x| (0.45..=9.55).contains(x)), "{p:?}");
+        }
+    }
 }

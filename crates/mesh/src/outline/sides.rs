@@ -58,3 +58,17 @@ impl Choice {
         [a, b].iter().all(|end| distance_to_segment(*end, *from, *to) <= tolerance)
     }
 }
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn a_line_takes_what_lies_on_it_wholly() {
+        let line = between((0.0, 0.0), (2.0, 1.0));
+        assert!(line.0.on_line([[1.0, 0.5], [0.5, 0.25]], 1e-12));
+        assert!(!line.0.on_line([[1.0, 0.5], [3.0, 1.5]], 1e-12), "reaches beyond");
+        assert!(!line.0.on_line([[1.0, 0.5], [0.5, 0.3]], 1e-12), "another direction");
+        assert!(!border_of("a").0.on_line([[1.0, 0.5], [0.5, 0.25]], 1e-12));
+    }
+}

@@ -180,3 +180,50 @@ impl Triangulation {
         }
     }
 }
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    /// A square with a diagonal; triangles 0 and 1 on either hand.
+    fn square() -> Triangulation {
+        let points = vec![[0.0, 0.0], [1.0, 0.0], [1.0, 1.0], [0.0, 1.0]];
+        Triangulation::constrained(points, &[[2, 0]]).unwrap()
+    }
+
+    #[test]
+    fn half_edges_fit_together() {
+        let mesh = square();
+        assert_eq!(mesh.triangle_count(), 2);
+        for h in 0..6 {
+            assert_eq!(previous(next(h)), h);
+            let mate = mesh.mate[h as usize];
+            if mate != NONE {
+                assert_eq!((mesh.from(mate), mesh.to(mate), mesh.mate[mate as usize]), (mesh.to(h), mesh.from(h), h));
+                assert_eq!(mesh.segment[h as usize], 0);
+            }
+        }
+        let diagonal = mesh.edge(0, 2).unwrap();
+        assert_eq!((mesh.from(diagonal), mesh.to(diagonal)), (0, 2));
+        assert_eq!(mesh.edge(1, 3), None);
+        // On the rim one of the two directions exists.
+        assert!(mesh.edge(0, 1).is_some() && mesh.edge(1, 0).is_none());
+    }
+
+    #[test]
+    fn triangles_without_region_are_dropped() {
+        let mut mesh = square();
+        let h = mesh.edge(2, 0).unwrap();
+        mesh.region[h as usize / 3] = 0; // the triangle on the left of the way from (1, 1) to (0, 0)
+        mesh.drop_outside();
+        assert_eq!((mesh.triangle_count(), mesh.mate.as_slice()), (1, &[NONE; 3][..]));
+        assert!(mesh.edge(0, 1).is_some(), "{mesh:?}");
+        assert_eq!(mesh.leaving[3], NONE);
+    }
+
+    #[test]
+    fn crossing_edges_are_refused() {
+        let points = vec![[0.0, 0.0], [1.0, 0.0], [1.0, 1.0], [0.0, 1.0]];
+        assert!(matches!(Triangulation::constrained(points, &[[0, 2], [1, 3]]), Err(MeshError::TooThin { .. })));
+    }
+}

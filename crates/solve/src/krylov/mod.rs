@@ -1,0 +1,5 @@
+//! Krylov methods.
+
+mod cg;
+
+pub use cg::ConjugateGradients;

@@ -1,0 +1,277 @@
+//! What one asks of a solution: integrals, flows, the balance, extremes.
+
+use hypercircle_assembly::{Condition, Place, cell_rule, place, side_points, side_rule};
+use hypercircle_mesh::{CellId, SideNameId};
+
+use crate::{Error, Solution};
+
+/// Integral and mean of the solution over a region.
+#[derive(Debug, Clone, Copy, PartialEq)]
+#[must_use]
+pub struct RegionResult {
+    /// ∫ u over the region.
+    pub integral: f64,
+    /// Length or area of the region.
+    pub measure: f64,
+}
+
+impl RegionResult {
+    /// The mean of u.
+    #[must_use]
+    pub fn mean(&self) -> f64 {
+        self.integral / self.measure
+    }
+}
+
+/// The overall balance: everything that flows in, is made inside, and is used up inside.
+#[derive(Debug, Clone, PartialEq)]
+#[must_use]
+pub struct Balance {
+    /// Inflow through each named side with a condition, in the order of the names.
+    pub inflows: Vec<(String, f64)>,
+    /// ∫ f.
+    pub source: f64,
+    /// ∫ c u.
+    pub reaction: f64,
+}
+
+impl Balance {
+    /// What is missing: Σ inflows + ∫ f − ∫ c u, zero but for rounding and the residual of the linear system.
+    #[must_use]
+    pub fn defect(&self) -> f64 {
+        self.inflows.iter().map(|(_, flow)| flow).sum::<f64>() + self.source - self.reaction
+    }
+
+    /// The largest of the terms: the defect is to be seen against it.
+    #[must_use]
+    pub fn size(&self) -> f64 {
+        self.inflows.iter().map(|(_, flow)| flow.abs()).fold(self.source.abs().max(self.reaction.abs()), f64::max)
+    }
+}
+
+/// A value and where it is taken.
+#[derive(Debug, Clone, Copy, PartialEq)]
+pub struct Extreme<const D: usize> {
+    /// The value.
+    pub value: f64,
+    /// Its place.
+    pub at: [f64; D],
+}
+
+/// Smallest and largest value with their places.
+#[derive(Debug, Clone, Copy, PartialEq)]
+pub struct Extremes<const D: usize> {
+    /// The smallest.
+    pub least: Extreme<D>,
+    /// The largest.
+    pub most: Extreme<D>,
+}
+
+impl<const D: usize> Extremes<D> {
+    fn none() -> Self {
+        let at = [0.0; D];
+        Self { least: Extreme { value: f64::INFINITY, at }, most: Extreme { value: f64::NEG_INFINITY, at } }
+    }
+
+    fn take(&mut self, value: f64, at: [f64; D]) {
+        if value < self.least.value {
+            self.least = Extreme { value, at };
+        }
+        if value > self.most.value {
+            self.most = Extreme { value, at };
+        }
+    }
+}
+
+/// Elements of order 2 and more are searched at their nodes and on a lattice of this many steps along each side.
+const LATTICE: usize = 4;
+
+impl<const D: usize> Solution<D> {
+    /// Integral and mean over a region.
+    ///
+    /// # Errors
+    /// A region that the mesh does not have.
+    pub fn over_region(&self, region: &str) -> Result<RegionResult, Error> {
+        let region = self.mesh().find_region(region)?;
+        let rule = cell_rule(self.space())?;
+        let table = self.basis().table(rule.points());
+        let mut result = RegionResult { integral: 0.0, measure: 0.0 };
+        for cell in self.mesh().cells().filter(|c| self.mesh().region(*c) == region) {
+            let scale = self.mesh().cell_measure(cell) / self.basis().shape().measure();
+            let unknowns = self.space().unknowns(cell);
+            for (q, w) in rule.weights().iter().enumerate() {
+                let u: f64 = unknowns.iter().zip(table.values_at(q)).map(|(k, v)| self.values()[*k as usize] * v).sum();
+                result.integral += w * scale * u;
+            }
+            result.measure += self.mesh().cell_measure(cell);
+        }
+        Ok(result)
+    }
+
+    /// Flow into the domain through all sides of a name, by the balanced formula: through Dirichlet sides it is the residual of
+    /// the full system at their unknowns, which is far more accurate than a derivative of u and closes the overall balance; through Robin
+    /// sides ∫ α(uₑ − u), through Neumann sides ∫ t. An unknown between two Dirichlet sides counts for both in the ratio
+    /// of their lengths there.
+    ///
+    /// # Errors
+    /// A name that the mesh does not have, or that has no side on the boundary.
+    pub fn inflow(&self, side: &str) -> Result<f64, Error> {
+        let name = self.mesh().find_side(side)?;
+        let on_boundary = |s: &&hypercircle_mesh::NamedSide| {
+            s.name == name && self.mesh().topology().neighbor(s.cell, s.local).is_none()
+        };
+        if self.mesh().named_sides().iter().find(on_boundary).is_none() {
+            return Err(Error::EmptySide { name: side.to_owned() });
+        }
+        Ok(self.inflows()?[name.index()])
+    }
+
+    /// Inflow by side name; zero for insulated ones.
+    fn inflows(&self) -> Result<Vec<f64>, Error> {
+        let mesh = self.mesh();
+        let mut flows = vec![0.0; mesh.side_names().len()];
+        let rule = side_rule(self.space())?;
+        let shape = self.basis().shape();
+        let per_side: Vec<_> = (0..shape.vertex_count()).map(|local| side_points(shape, local as u8, &rule)).collect();
+        let tables: Vec<_> = per_side.iter().map(|points| self.basis().table(points)).collect();
+        // Prescribed unknowns of each side with the length that they stand for.
+        let mut held: Vec<(u32, SideNameId, f64)> = Vec::new();
+        for side in self.terms().condition_sides(mesh) {
+            let (local, length) = (usize::from(side.local), mesh.side_measure(side.cell, side.local));
+            let unknowns = self.space().unknowns(side.cell);
+            let u = |q: usize| -> f64 {
+                let values = tables[local].values_at(q);
+                unknowns.iter().zip(values).map(|(k, v)| self.values()[*k as usize] * v).sum()
+            };
+            let places = per_side[local].iter().map(|point| place(mesh, side.cell, point));
+            let weights = rule.weights().iter().map(|w| w * length);
+            match side.condition {
+                Condition::Dirichlet(_) => {
+                    let corners = shape.side_vertices(local);
+                    let inner = if D == 1 { 0 } else { self.space().order() - 1 };
+                    let along = shape.vertex_count() + local * inner;
+                    held.extend(
+                        corners.iter().copied().chain(along..along + inner).map(|k| (unknowns[k], side.name, length)),
+                    );
+                }
+                Condition::Neumann(inflow) => {
+                    flows[side.name.index()] += places.zip(weights).map(|(at, w)| w * inflow.at(&at)).sum::<f64>();
+                }
+                Condition::Robin { film, surroundings } => {
+                    flows[side.name.index()] += places
+                        .zip(weights)
+                        .enumerate()
+                        .map(|(q, (at, w))| w * film.at(&at) * (surroundings.at(&at) - u(q)))
+                        .sum::<f64>();
+                }
+            }
+        }
+        held.sort_by_key(|(unknown, name, _)| (*unknown, *name));
+        let residual = self.system().residual(self.values())?;
+        for group in held.chunk_by(|a, b| a.0 == b.0) {
+            let total: f64 = group.iter().map(|entry| entry.2).sum();
+            for (unknown, name, length) in group {
+                flows[name.index()] -= residual[*unknown as usize] * length / total;
+            }
+        }
+        Ok(flows)
+    }
+
+    /// The overall balance.
+    ///
+    /// # Errors
+    /// None that assembly has not already told.
+    pub fn balance(&self) -> Result<Balance, Error> {
+        let mesh = self.mesh();
+        let flows = self.inflows()?;
+        let names = (0..mesh.side_names().len() as u32).map(SideNameId);
+        let inflows = names
+            .filter(|name| self.terms().condition(*name).is_some())
+            .map(|name| (mesh.side_name(name).to_owned(), flows[name.index()]))
+            .collect();
+        let mut balance = Balance { inflows, source: 0.0, reaction: 0.0 };
+        self.integrate(|place, u, w| {
+            if let Some(f) = &self.terms().source {
+                balance.source += w * f.at(place);
+            }
+            if let Some(c) = &self.terms().reaction {
+                balance.reaction += w * c.at(place) * u;
+            }
+        })?;
+        Ok(balance)
+    }
+
+    /// Visits all quadrature points with the value of u and the integration weight.
+    pub(crate) fn integrate(&self, mut visit: impl FnMut(&Place<D>, f64, f64)) -> Result<(), Error> {
+        let rule = cell_rule(self.space())?;
+        let table = self.basis().table(rule.points());
+        for cell in self.mesh().cells() {
+            let scale = self.mesh().cell_measure(cell) / self.basis().shape().measure();
+            let unknowns = self.space().unknowns(cell);
+            for (q, (point, w)) in rule.points().iter().zip(rule.weights()).enumerate() {
+                let u = unknowns.iter().zip(table.values_at(q)).map(|(k, v)| self.values()[*k as usize] * v).sum();
+                visit(&place(self.mesh(), cell, point), u, w * scale);
+            }
+        }
+        Ok(())
+    }
+
+    /// Smallest and largest value of the whole field. Exact for linear elements; for higher orders found at the nodes and
+    /// on a fine lattice in every cell.
+    #[must_use]
+    pub fn extremes(&self) -> Extremes<D> {
+        let shape = self.basis().shape();
+        let mut points = self.basis().nodes().to_vec();
+        if self.space().order() > 1 {
+            let step = 1.0 / LATTICE as f64;
+            let rows = if D == 1 { 0 } else { LATTICE };
+            points.extend((0..=rows).flat_map(|j| (0..=LATTICE - j).map(move |i| [i as f64 * step, j as f64 * step])));
+        }
+        debug_assert!(points.iter().all(|p| shape.hats(p).iter().all(|hat| *hat >= -1e-12)));
+        let cells = self.mesh().cells().map(|cell| (cell, points.as_slice()));
+        self.search(cells)
+    }
+
+    /// Smallest and largest value along all sides of a name.
+    ///
+    /// # Errors
+    /// A name that the mesh does not have.
+    pub fn extremes_on(&self, side: &str) -> Result<Extremes<D>, Error> {
+        let name = self.mesh().find_side(side)?;
+        let shape = self.basis().shape();
+        let steps = if self.space().order() > 1 { 2 * LATTICE } else { 1 };
+        let along: Vec<Vec<[f64; 2]>> = (0..shape.vertex_count())
+            .map(|local| {
+                let ends = shape.side_vertices(local);
+                let (a, b) = (shape.vertices()[ends[0]], shape.vertices()[ends[ends.len() - 1]]);
+                (0..=steps)
+                    .map(|k| {
+                        let t = k as f64 / steps as f64;
+                        [0, 1].map(|i| a[i] + t * (b[i] - a[i]))
+                    })
+                    .collect()
+            })
+            .collect();
+        let sides = self.mesh().named_sides().iter().filter(|s| s.name == name);
+        Ok(self.search(sides.map(|s| (s.cell, along[usize::from(s.local)].as_slice()))))
+    }
+
+    fn search<'p>(&self, cells: impl Iterator<Item = (CellId, &'p [[f64; 2]])>) -> Extremes<D> {
+        let mut extremes = Extremes::none();
+        let mut tabulated: Option<(&[[f64; 2]], hypercircle_element::Table)> = None;
+        for (cell, points) in cells {
+            if tabulated.as_ref().is_none_or(|(known, _)| !std::ptr::eq(*known, points)) {
+                tabulated = Some((points, self.basis().table(points)));
+            }
+            let Some((_, table)) = &tabulated else { continue };
+            let unknowns = self.space().unknowns(cell);
+            for (q, point) in points.iter().enumerate() {
+                let u: f64 = unknowns.iter().zip(table.values_at(q)).map(|(k, v)| self.values()[*k as usize] * v).sum();
+                if u < extremes.least.value || u > extremes.most.value {
+                    extremes.take(u, place(self.mesh(), cell, point).x);
+                }
+            }
+        }
+        extremes
+    }
+}

@@ -80,10 +80,10 @@ impl Builder<'_> {
                 *x = 0.0;
             }
         }
-        if let Some((near, square)) = self.tree.nearest_neighbor_iter_with_distance_2(place).next() {
-            if square <= self.tolerance * self.tolerance {
-                return near.data;
-            }
+        if let Some((near, square)) = self.tree.nearest_neighbor_iter_with_distance_2(place).next()
+            && square <= self.tolerance * self.tolerance
+        {
+            return near.data;
         }
         let number = self.points.len() as u32;
         self.points.push(place);

@@ -56,3 +56,17 @@ pub(super) fn finish(triangles: &Triangulation, plan: Plan) -> Mesh<2> {
         named_sides,
     })
 }
+
+#[cfg(test)]
+mod tests {
+    use crate::hilbert::hilbert_order;
+    use crate::{Outline, rectangle};
+
+    #[test]
+    fn vertices_and_cells_follow_hilberts_curve() {
+        let mesh = Outline::new().region("a", rectangle((0.0, 0.0), (2.0, 1.0))).unwrap().mesh(0.05).unwrap();
+        let in_order = |points: &[[f64; 2]]| hilbert_order(points).iter().zip(0..).all(|(k, i)| *k == i);
+        assert!(in_order(mesh.points()));
+        assert!(in_order(&mesh.cells().map(|c| mesh.cell_center(c)).collect::<Vec<_>>()));
+    }
+}

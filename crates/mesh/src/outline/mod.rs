@@ -1,21 +1,5 @@
 //! An outline — regions as closed loops, holes, named sides, wanted sizes — becomes a mesh of triangles.
 //!
-//! ```
-//! use hypercircle_mesh::{Outline, between, polygon, rectangle};
-//!
-//! let mut wall = Outline::new(); // meters
-//! wall.region("brick", polygon(&[(0.0, 0.0), (0.24, 0.0), (0.24, 1.0), (0.0, 1.0)]))?;
-//! wall.region("foam", polygon(&[(0.24, 0.0), (0.36, 0.0), (0.36, 1.0), (0.24, 1.0)]))?;
-//! wall.region("anchor", rectangle((0.1, 0.4), (0.3, 0.42)))?; // lies over both
-//! wall.hole("duct", rectangle((0.05, 0.7), (0.15, 0.8)))?;
-//! wall.side("room", between((0.0, 0.0), (0.0, 1.0)))?;
-//! wall.side("street", between((0.36, 0.0), (0.36, 1.0)))?;
-//! wall.size_near_point((0.24, 0.41), 0.002)?;
-//! let mesh = wall.mesh(0.05)?;
-//! assert!((mesh.measure() - 0.35).abs() < 1e-12);
-//! # Ok::<(), hypercircle_mesh::MeshError>(())
-//! ```
-//!
 //! From left to right: loops are checked one by one (`loops`) and laid over each other (`arrange`); faces get their
 //! regions and edges their names (`regions`); borders are cut into pieces of the wanted size (`pieces`, `sizes`) and
 //! triangulated (`triangulation`); a lattice fills what is uniform (`seed`), refinement does the rest (`refine`, on
@@ -58,7 +42,21 @@ use crate::{Mesh, MeshError};
 ///
 /// Points closer than 10⁻¹⁰ of the outline's extent are one point.
 ///
-/// See the [module](self) for an example.
+/// ```
+/// use hypercircle_mesh::{Outline, between, polygon, rectangle};
+///
+/// let mut wall = Outline::new(); // meters
+/// wall.region("brick", polygon(&[(0.0, 0.0), (0.24, 0.0), (0.24, 1.0), (0.0, 1.0)]))?;
+/// wall.region("foam", polygon(&[(0.24, 0.0), (0.36, 0.0), (0.36, 1.0), (0.24, 1.0)]))?;
+/// wall.region("anchor", rectangle((0.1, 0.4), (0.3, 0.42)))?; // lies over both
+/// wall.hole("duct", rectangle((0.05, 0.7), (0.15, 0.8)))?;
+/// wall.side("room", between((0.0, 0.0), (0.0, 1.0)))?;
+/// wall.side("street", between((0.36, 0.0), (0.36, 1.0)))?;
+/// wall.size_near_point((0.24, 0.41), 0.002)?;
+/// let mesh = wall.mesh(0.05)?;
+/// assert!((mesh.measure() - 0.35).abs() < 1e-12);
+/// # Ok::<(), hypercircle_mesh::MeshError>(())
+/// ```
 #[derive(Debug, Clone, Default)]
 pub struct Outline {
     stated: Vec<Stated>,
@@ -83,7 +81,7 @@ enum Wish {
     NearSide(String, f64),
 }
 
-/// Cells at most, unless [`Outline::max_cells`] says otherwise: some 5 GB while meshing.
+/// Cells at most, unless [`Outline::max_cells`] says otherwise: some 3 GB while meshing.
 const MAX_CELLS: usize = 30_000_000;
 
 impl Outline {
@@ -180,6 +178,11 @@ impl Outline {
     /// * [`MeshError::Loop`] for a hole outside the regions and a region hidden by later ones,
     /// * [`MeshError::NoSuchSide`] for a name without sides, [`MeshError::UnknownName`] for a size at an unknown name,
     /// * [`MeshError::TooMany`] beyond the limit of cells.
+    ///
+    /// # Source
+    /// Constrained Delaunay triangulation; refinement after J. Ruppert, J. Algorithms 18 (1995), with the off-centers of
+    /// A. Üngör (2004) and, at small angles of the outline, the concentric circles of G. Miller, S. Pav and
+    /// N. Walkington (2003); equilateral lattice where the size is uniform.
     pub fn mesh(&self, size: f64) -> Result<Mesh<2>, MeshError> {
         check_size(size, || "the general size".to_owned())?;
         if !self.stated.iter().any(|s| !s.hole) {

@@ -60,9 +60,7 @@ fn seed_field(
         for column in steps(left - shift, right - shift, size) {
             let x = [shift + column as f64 * size, y];
             if sizes.by_sources(x) >= size {
-                if let Some(vertex) = try_seed(mesh, cavity, x, size, from) {
-                    from = vertex;
-                }
+                from = try_seed(mesh, cavity, x, size, from).unwrap_or(from);
             }
         }
     }
@@ -117,6 +115,21 @@ mod tests {
             let row = (p[1] / height).round();
             assert!((p[1] - row * height).abs() < 1e-12);
             assert!(p.iter().all(|x| (0.45..=9.55).contains(x)), "{p:?}");
+        }
+    }
+
+    #[test]
+    fn seeds_keep_clear_of_vertices_and_of_smaller_sizes() {
+        use crate::outline::sizes::Source;
+        let points = vec![[0.0, 0.0], [10.0, 0.0], [10.0, 10.0], [0.0, 10.0], [5.3, 5.1]];
+        let mut mesh = Triangulation::constrained(points, &[[0, 1], [1, 2], [2, 3], [3, 0]]).unwrap();
+        mesh.region.fill(0);
+        let source = Source { ends: [[0.0, 0.0], [0.0, 10.0]], size: 0.4 }; // reaches 1 at x = 2
+        seed(&mut mesh, &mut Cavity::default(), &SizeField::new(vec![1.0], vec![source], [0.0; 2], 10.0), [0.0; 2]);
+        assert!(mesh.points.len() > 60);
+        for p in &mesh.points[5..] {
+            assert!((p[0] - 5.3).hypot(p[1] - 5.1) >= FROM_VERTICES, "{p:?}");
+            assert!(p[0] >= 2.0, "{p:?}");
         }
     }
 }

@@ -34,7 +34,7 @@ pub(super) const fn next(h: u32) -> u32 {
 /// The previous half-edge around the triangle.
 #[inline]
 pub(super) const fn previous(h: u32) -> u32 {
-    if h % 3 == 0 { h + 2 } else { h - 1 }
+    if h.is_multiple_of(3) { h + 2 } else { h - 1 }
 }
 
 impl Triangulation {

@@ -78,6 +78,13 @@ fn names_that_name_nothing() {
     let Err(MeshError::NoSuchSide { name, place }) = outline.mesh(0.1) else { panic!() };
     assert_eq!(name, "room");
     assert!(place.contains("(0.5, 0)"), "{place}");
+    // A border that lies in a hole is no side of any cell.
+    let mut buried = square();
+    buried.region("core", rectangle((0.4, 0.4), (0.6, 0.6))).unwrap();
+    buried.region("core", rectangle((0.0, 0.0), (0.1, 0.1))).unwrap();
+    buried.hole("duct", rectangle((0.3, 0.3), (0.7, 0.7))).unwrap();
+    buried.side("lost", between((0.4, 0.4), (0.6, 0.4))).unwrap();
+    assert!(matches!(buried.mesh(0.1), Err(MeshError::NoSuchSide { name, .. }) if name == "lost"));
     let mut border = square();
     border.side("skin", border_of("plat")).unwrap();
     let unknown = MeshError::UnknownName { what: "region", name: "plat".into(), known: vec!["plate".into()] };

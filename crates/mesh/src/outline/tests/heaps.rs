@@ -5,7 +5,7 @@ use super::*;
 /// Rectangles, triangles and quadrilaterals over a plate, with corners on a coarse grid two times out of three, so that
 /// many borders run along each other.
 fn heap(random: &mut Random, round: usize) -> Outline {
-    let steps = (round % 3 != 0).then_some(1.0 + (random.next() * 6.0).floor());
+    let steps = (!round.is_multiple_of(3)).then_some(1.0 + (random.next() * 6.0).floor());
     let mut heap = Outline::new();
     heap.region("plate", rectangle((0.0, 0.0), (1.0, 1.0))).unwrap();
     for i in 0..1 + (random.next() * 8.0) as usize {

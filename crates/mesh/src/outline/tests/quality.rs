@@ -30,6 +30,19 @@ fn away(x: [f64; 2], places: &[[f64; 2]]) -> f64 {
     places.iter().map(|p| (p[0] - x[0]).hypot(p[1] - x[1])).fold(f64::INFINITY, f64::min)
 }
 
+/// The largest angle opposite to a side on the boundary, in degrees.
+fn largest_angle_at_the_boundary(mesh: &Mesh<2>) -> f64 {
+    let topology = mesh.topology();
+    let opposite = |side| {
+        let (cell, local) = topology.first_cell(side);
+        let v = mesh.cell_vertices(cell);
+        let [a, b, c] = [0, 1, 2].map(|k| mesh.point(v[(usize::from(local) + k) % 3]));
+        let (u, w) = ([a[0] - c[0], a[1] - c[1]], [b[0] - c[0], b[1] - c[1]]);
+        (u[0] * w[1] - u[1] * w[0]).atan2(u[0] * w[0] + u[1] * w[1]).to_degrees()
+    };
+    topology.boundary_sides().map(opposite).fold(0.0, f64::max)
+}
+
 /// The largest ratio of a side's length to the size wanted.
 fn longest_in_sizes(mesh: &Mesh<2>, size: impl Fn([f64; 2]) -> f64) -> f64 {
     let ratio = |c| mesh.cell_diameter(c) / size(mesh.cell_center(c));
@@ -88,6 +101,7 @@ fn usual_outlines_have_no_pointed_cells() {
             let mesh = outline.mesh(size).unwrap();
             check_sound(&mesh, euler);
             assert!(smallest_angle(&mesh) >= 27.9, "{} at size {size}", smallest_angle(&mesh));
+            assert!(largest_angle_at_the_boundary(&mesh) <= 90.0 + 1e-9);
             assert!(longest_in_sizes(&mesh, |_| size) <= 1.45 + 1e-9);
         }
     }

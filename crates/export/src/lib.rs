@@ -3,8 +3,11 @@
 
 mod error;
 mod field;
+mod picture;
 mod table;
+mod vtu;
 
 pub use error::ExportError;
 pub use field::Field;
 pub use table::{Table, format_interval, significant};
+pub use vtu::VtuFile;

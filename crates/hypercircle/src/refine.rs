@@ -157,6 +157,10 @@ impl<const D: usize> Deref for Answer<D> {
 const PROGRESS: f64 = 0.999;
 const PATIENCE: usize = 8;
 
+/// A round refines in at most so many passes, and no further than to so many times the cells.
+const PASSES: usize = 8;
+const GROWTH: f64 = 1.15;
+
 /// Runs the loop.
 pub(crate) fn pursue<const D: usize>(
     mesh: &Arc<Mesh<D>>,
@@ -189,12 +193,11 @@ pub(crate) fn pursue<const D: usize>(
         if signal == Signal::Stop {
             return Ok(Answer { solution, ending: Ending::Cancelled, rounds });
         }
-        let marked = mark(certificate.shares(), goal.share);
         let stale = rounds.len() > PATIENCE && round.bound > PROGRESS * rounds[rounds.len() - 1 - PATIENCE].bound;
-        if marked.is_empty() || stale && !unbounded {
+        let finer = refined(solution.mesh(), certificate.shares(), order, goal.share)?;
+        let Some(finer) = finer.filter(|_| !stale || unbounded) else {
             return Ok(Answer { solution, ending: Ending::Stuck, rounds });
-        }
-        let (finer, _) = solution.mesh().bisect(&marked)?;
+        };
         let space = Space::new(Arc::new(finer), order)?;
         let unknowns = space.unknown_count();
         if let Some(limit) = goal.budget.broken_by(unknowns, order, foreseen_end(&rounds, unknowns)) {
@@ -206,6 +209,46 @@ pub(crate) fn pursue<const D: usize>(
             Err(error) => return Err(error),
         }
     }
+}
+
+/// Marks and bisects, again and again with shares foretold for the children, until the mesh has grown enough to be worth
+/// another solve. Near a singularity a round so does the work of many. `None` if no cell has a share.
+///
+/// A cell of measure m adds about m^{p+1} to the square of the bound where the solution is smooth: the child with the part r of
+/// its parent's measure gets the part r^{p+1} of its share. At a singularity the true share is larger, so too little is refined rather
+/// than too much.
+fn refined<const D: usize>(
+    mesh: &Arc<Mesh<D>>,
+    shares: &[f64],
+    order: usize,
+    share: f64,
+) -> Result<Option<Mesh<D>>, Error> {
+    let enough = (GROWTH * mesh.cell_count() as f64) as usize;
+    let mut finer: Option<Mesh<D>> = None;
+    let mut shares = shares.to_vec();
+    for _ in 0..PASSES {
+        let now = finer.as_ref().unwrap_or(mesh);
+        let marked = mark(&shares, share);
+        if marked.is_empty() {
+            break;
+        }
+        let (next, relation) = now.bisect(&marked)?;
+        let exponent = (2 * order / D + 1) as i32;
+        shares = next
+            .cells()
+            .map(|cell| {
+                let parent = relation.parent(cell);
+                let ratio = next.cell_measure(cell) / now.cell_measure(parent);
+                shares[parent.index()] * ratio.powi(exponent)
+            })
+            .collect();
+        let done = next.cell_count() >= enough;
+        finer = Some(next);
+        if done {
+            break;
+        }
+    }
+    Ok(finer)
 }
 
 /// When the next round will end, if its time grows with the number of unknowns.

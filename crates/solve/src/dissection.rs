@@ -1,7 +1,7 @@
 //! Nested dissection by place: an elimination order with little fill.
 //!
-//! The unknowns are halved by place along the longer direction of their box; those of one half that touch the other are the
-//! separator and come last; both halves are treated likewise. For planar meshes the factor has O(n log n) entries.
+//! The unknowns are halved by place along the direction that separates them best; those of one half that touch the other are
+//! the separator and come last; both halves are treated likewise. For planar meshes the factor has O(n log n) entries.
 //!
 //! Source: A. George, SIAM J. Numer. Anal. 10 (1973); with coordinates: common practice.
 
@@ -40,7 +40,41 @@ fn dissect(matrix: CsrView<'_>, places: Coordinates<'_>, separated: &[AtomicBool
     if part.len() <= LEAF {
         return;
     }
-    let axis = longer_axis(places, part);
+    // Graded meshes crowd the unknowns, so the shape of the box says little: every direction is tried.
+    let cuts = (0..places.dimension()).map(|axis| cut(matrix, places, separated, part, axis));
+    let Some(Cut { lower, upper, separator }) = cuts.min_by_key(|cut| cut.separator.len()) else { return };
+    if lower.is_empty() || upper.is_empty() {
+        return; // everything touches everything: nothing to gain
+    }
+    for u in &separator {
+        separated[*u as usize].store(true, Relaxed);
+    }
+    let parallel = part.len() > PARALLEL;
+    let (first, rest) = part.split_at_mut(lower.len());
+    let (second, last) = rest.split_at_mut(upper.len());
+    first.copy_from_slice(&lower);
+    second.copy_from_slice(&upper);
+    last.copy_from_slice(&separator);
+    drop((lower, upper, separator));
+    let mut low = || dissect(matrix, places, separated, first);
+    let mut high = || dissect(matrix, places, separated, second);
+    if parallel {
+        rayon::join(low, high);
+    } else {
+        low();
+        high();
+    }
+}
+
+/// A part in three: no unknown of `lower` touches one of `upper`.
+struct Cut {
+    lower: Vec<u32>,
+    upper: Vec<u32>,
+    separator: Vec<u32>,
+}
+
+/// Cuts a part at its median along an axis.
+fn cut(matrix: CsrView<'_>, places: Coordinates<'_>, separated: &[AtomicBool], part: &mut [u32], axis: usize) -> Cut {
     let by_place = |a: &u32, b: &u32| {
         let (x, y) = (places.get(*a as usize, axis), places.get(*b as usize, axis));
         x.total_cmp(&y).then(a.cmp(b))
@@ -57,41 +91,11 @@ fn dissect(matrix: CsrView<'_>, places: Coordinates<'_>, separated: &[AtomicBool
     let split = |half: &[u32]| half.iter().partition::<Vec<u32>, _>(|u| !touches_other_half(u));
     let (low, high) = (split(&part[..middle]), split(&part[middle..]));
     // The separator is the thinner of the two rims; the other rim goes back to its half.
-    let (lower, upper, separator) = if low.1.len() < high.1.len() {
-        (low.0, [high.0, high.1].concat(), low.1)
+    if low.1.len() < high.1.len() {
+        Cut { lower: low.0, upper: [high.0, high.1].concat(), separator: low.1 }
     } else {
-        ([low.0, low.1].concat(), high.0, high.1)
-    };
-    if lower.is_empty() || upper.is_empty() {
-        return; // everything touches everything: nothing to gain
+        Cut { lower: [low.0, low.1].concat(), upper: high.0, separator: high.1 }
     }
-    for u in &separator {
-        separated[*u as usize].store(true, Relaxed);
-    }
-    let (first, rest) = part.split_at_mut(lower.len());
-    let (second, last) = rest.split_at_mut(upper.len());
-    first.copy_from_slice(&lower);
-    second.copy_from_slice(&upper);
-    last.copy_from_slice(&separator);
-    drop((lower, upper, separator));
-    if middle <= PARALLEL {
-        dissect(matrix, places, separated, first);
-        dissect(matrix, places, separated, second);
-    } else {
-        rayon::join(|| dissect(matrix, places, separated, first), || dissect(matrix, places, separated, second));
-    }
-}
-
-/// The direction in which the box around a part is longest.
-fn longer_axis(places: Coordinates<'_>, part: &[u32]) -> usize {
-    let extent = |axis: usize| {
-        let (low, high) = part.iter().fold((f64::INFINITY, f64::NEG_INFINITY), |(l, h), u| {
-            let x = places.get(*u as usize, axis);
-            (l.min(x), h.max(x))
-        });
-        high - low
-    };
-    (1..places.dimension()).fold(0, |best, axis| if extent(axis) > extent(best) { axis } else { best })
 }
 
 #[cfg(test)]

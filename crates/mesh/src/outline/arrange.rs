@@ -272,6 +272,14 @@ mod tests {
     }
 
     #[test]
+    fn what_an_area_runs_along_twice_is_no_border() {
+        let notched = rectangle((0.0, 0.0), (2.0, 1.0)).without(rectangle((0.5, 0.0), (1.0, 0.5)));
+        let stated = [Stated { name: "a".to_owned(), area: notched, hole: false }];
+        let arrangement = arrange(&stated, &[]).unwrap();
+        assert_eq!((arrangement.points.len(), arrangement.edges.len()), (8, 8));
+    }
+
+    #[test]
     fn extents_out_of_all_measure_are_refused() {
         let tiny = stated(&[("a", rectangle((0.0, 0.0), (1e-40, 1e-40)))]);
         assert!(matches!(arrange(&tiny, &[]), Err(MeshError::NotPositive { value, .. }) if value == 1e-40));

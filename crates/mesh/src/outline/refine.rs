@@ -302,3 +302,30 @@ fn extremes(corners: [[f64; 2]; 3]) -> (usize, usize) {
     let longest = (1..3).fold(0, |best, i| if lengths[i] > lengths[best] { i } else { best });
     (shortest, longest)
 }
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn the_new_vertex_is_the_off_center_of_a_needle_and_the_circumcenter_of_a_plump_triangle() {
+        let sizes = SizeField::new(vec![1.0], Vec::new(), [0.0; 2], 10.0);
+        let place = |apex: [f64; 2]| {
+            let mesh = Triangulation::constrained(vec![[0.0, 0.0], [1.0, 0.0], apex], &[]).unwrap();
+            let border_of = vec![NONE; 3];
+            let given = Given { sizes: &sizes, borders: &[], border_of, corner_count: 3, shortest: 0.0, limit: 9 };
+            Refinement::new(mesh, Cavity::default(), given).new_vertex(0).1
+        };
+        // Over the base 1 stands the triangle with the angle 28° at its tip.
+        let [x, y] = place([0.5, 10.0]);
+        let tip = 2.0 * (0.5 / y).atan().to_degrees();
+        assert!((x - 0.5).abs() < 1e-12 && (tip - POINTED).abs() < 1e-9, "{x} {tip}");
+        let [x, y] = place([1.0, 1.2]);
+        assert!((x - 0.5).abs() < 1e-12 && (y - 0.6).abs() < 1e-12, "{x} {y}");
+    }
+
+    #[test]
+    fn the_sides_of_a_triangle_by_length() {
+        assert_eq!(extremes([[0.0, 0.0], [3.0, 0.0], [3.0, 1.0]]), (1, 2));
+    }
+}

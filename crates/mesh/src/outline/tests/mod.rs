@@ -75,6 +75,10 @@ fn check_sound(mesh: &Mesh<2>, euler: i64) {
     for v in 0..mesh.vertex_count() as u32 {
         assert!(!topology.cells_around(VertexId(v)).is_empty(), "vertex {v} is unused");
     }
+    for side in mesh.named_sides() {
+        let number = topology.cell_sides(side.cell)[usize::from(side.local)];
+        assert_eq!(topology.first_cell(number).0, side.cell, "a named side is not with the lower cell");
+    }
     for cell in mesh.cells() {
         let first = mesh.side_measure(cell, 0);
         assert!(first >= mesh.cell_diameter(cell) * (1.0 - 1e-9), "the longest side is not the first");
@@ -210,6 +214,17 @@ fn borders_holes_and_the_rest_have_names() {
     let mesh = outline.mesh(0.3).unwrap();
     near(length_of(&mesh, "inlet"), 2.0);
     assert_eq!(mesh.side_names().find("duct"), None);
+}
+
+#[test]
+fn an_opening_may_share_the_rim() {
+    let mut outline = Outline::new();
+    outline.region("c", rectangle((0.0, 0.0), (2.0, 1.0)).without(rectangle((0.5, 0.0), (1.0, 0.5)))).unwrap();
+    outline.side("foot", between((0.0, 0.0), (2.0, 0.0))).unwrap();
+    let mesh = outline.mesh(0.2).unwrap();
+    check_sound(&mesh, 1);
+    near(mesh.measure(), 1.75);
+    near(length_of(&mesh, "foot"), 1.5);
 }
 
 #[test]

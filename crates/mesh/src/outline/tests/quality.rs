@@ -108,6 +108,15 @@ fn usual_outlines_have_no_pointed_cells() {
 }
 
 #[test]
+fn a_corner_near_a_side_splits_it() {
+    let mut notched = Outline::new();
+    notched.region("plate", polygon(&[(0.0, 0.0), (1.0, 0.0), (1.0, 1.0), (0.5, 0.35), (0.0, 1.0)])).unwrap();
+    let mesh = notched.mesh(2.0).unwrap();
+    check_sound(&mesh, 1);
+    assert!(largest_angle_at_the_boundary(&mesh) <= 90.0 + 1e-9, "{}", largest_angle_at_the_boundary(&mesh));
+}
+
+#[test]
 fn uniform_cells_are_about_as_long_as_asked() {
     let mesh = l_shape().mesh(0.02).unwrap();
     let lengths = mesh.cells().flat_map(|c| (0..3).map(move |i| (c, i))).map(|(c, i)| mesh.side_measure(c, i));

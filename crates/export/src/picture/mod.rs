@@ -1,20 +1,130 @@
 //! Pictures of fields as SVG.
 
-/// Text as XML wants it: markup escaped, control characters that XML does not allow left out.
-pub(crate) fn escape(text: &str) -> String {
-    let mut out = String::with_capacity(text.len());
-    for c in text.chars() {
-        match c {
-            '&' => out.push_str("&amp;"),
-            '<' => out.push_str("&lt;"),
-            '>' => out.push_str("&gt;"),
-            '"' => out.push_str("&quot;"),
-            '\'' => out.push_str("&apos;"),
-            '\t' | '\n' | '\r' => out.push(' '),
-            '\u{FFFE}' | '\u{FFFF}' => {}
-            c if c < ' ' => {}
-            c => out.push(c),
+mod axes;
+mod bar;
+mod borders;
+mod colors;
+mod contour;
+mod layout;
+mod lines;
+mod pieces;
+mod shade;
+mod svg;
+
+use std::path::Path;
+
+use hypercircle_mesh::Mesh;
+
+use self::colors::Scale;
+use self::layout::{Layout, Wishes};
+use self::pieces::Piece;
+use self::svg::Svg;
+use crate::{ExportError, Field};
+
+pub use self::colors::Colors;
+pub(crate) use self::svg::escape;
+
+/// A picture of a triangle mesh and what lies on it.
+#[derive(Debug, Clone)]
+#[must_use]
+pub struct Picture<'a> {
+    mesh: &'a Mesh<2>,
+    title: String,
+    length_unit: String,
+    field: Option<&'a Field>,
+    colors: Colors,
+    contours: usize,
+    mesh_lines: bool,
+}
+
+impl<'a> Picture<'a> {
+    /// A picture of the mesh: its borders and, unless there is a field, its cells.
+    pub fn of(mesh: &'a Mesh<2>) -> Self {
+        Self {
+            mesh,
+            title: String::new(),
+            length_unit: String::new(),
+            field: None,
+            colors: Colors::default(),
+            contours: 0,
+            mesh_lines: false,
         }
     }
-    out
+
+    /// The title above the picture.
+    pub fn title(mut self, title: &str) -> Self {
+        self.title = title.into();
+        self
+    }
+
+    /// The unit of the coordinates, for the titles of the axes.
+    pub fn length_unit(mut self, unit: &str) -> Self {
+        self.length_unit = unit.into();
+        self
+    }
+
+    /// Shades the mesh by a field and explains the colors in a bar.
+    pub fn field(mut self, field: &'a Field) -> Self {
+        self.field = Some(field);
+        self
+    }
+
+    /// Chooses the colors of the field.
+    pub fn colors(mut self, colors: Colors) -> Self {
+        self.colors = colors;
+        self
+    }
+
+    /// Draws about so many contour lines at round values of the field.
+    pub fn contours(mut self, count: usize) -> Self {
+        self.contours = count;
+        self
+    }
+
+    /// Whether to draw the sides of cells.
+    pub fn mesh_lines(mut self, wanted: bool) -> Self {
+        self.mesh_lines = wanted;
+        self
+    }
+
+    /// The text of the SVG file.
+    ///
+    /// # Errors
+    /// For arrays that do not fit the mesh, values that are not finite, and a mesh that cannot be drawn to scale.
+    pub fn to_svg(&self) -> Result<String, ExportError> {
+        let (low, high) = self.mesh.bounding_box();
+        let wishes = Wishes { title: &self.title, bar: self.field.is_some(), arrow_legend: false };
+        let layout = Layout::new(low, high, wishes)?;
+        let mut svg = Svg::default();
+        let to_pixel = |x| layout.to_pixel(x);
+        if let Some(field) = self.field {
+            self.draw_field(&mut svg, &layout, field)?;
+        }
+        if self.mesh_lines {
+            borders::mesh_lines(&mut svg, self.mesh, &to_pixel);
+        }
+        borders::borders(&mut svg, self.mesh, &to_pixel);
+        layout.draw(&mut svg, &self.length_unit);
+        Ok(svg.finish(layout.width(), layout.below + 10.0))
+    }
+
+    fn draw_field(&self, svg: &mut Svg, layout: &Layout, field: &Field) -> Result<(), ExportError> {
+        field.check(self.mesh)?;
+        let (low, high) = field.range().unwrap_or((0.0, 0.0));
+        let scale = Scale::new(low, high, self.colors);
+        let pieces: Vec<Piece> = pieces::pieces(self.mesh, field, |x| layout.to_pixel(x)).collect();
+        shade::bands(svg, pieces.iter().copied(), &scale);
+        let levels = contour::levels(low, high, self.contours);
+        contour::draw(svg, &pieces, &scale, &levels);
+        bar::draw(svg, layout, field, &scale, &levels);
+        Ok(())
+    }
+
+    /// Writes the SVG file.
+    ///
+    /// # Errors
+    /// Those of [`Self::to_svg`], and [`ExportError::Io`] when the file cannot be written.
+    pub fn save(&self, path: impl AsRef<Path>) -> Result<(), ExportError> {
+        ExportError::write(path.as_ref(), self.to_svg()?.as_bytes())
+    }
 }

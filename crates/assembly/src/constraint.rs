@@ -88,7 +88,7 @@ impl Constraints {
                 along.push((space.unknowns(side.cell)[k], value));
             }
         }
-        along.sort_by(|a, b| a.0.cmp(&b.0));
+        along.sort_by_key(|entry| entry.0);
         along.dedup_by_key(|entry| entry.0);
         self.unknowns.extend(along.iter().map(|entry| entry.0));
         self.values.extend(along.iter().map(|entry| entry.1));

@@ -70,9 +70,7 @@ impl Direct {
             }
             kept.factor.resize(kept.symbolic.len_val(), 0.0);
             kept.values = matrix.values().to_vec();
-            if let Err(error) = numeric(&mut kept) {
-                return Err(error);
-            }
+            numeric(&mut kept)?;
         }
         Ok(self.kept.insert(kept))
     }

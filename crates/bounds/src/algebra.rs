@@ -11,12 +11,12 @@
 use std::cmp::Ordering;
 use std::collections::BinaryHeap;
 
-use hypercircle_assembly::{AssemblyError, Condition, System, Terms, place};
+use hypercircle_assembly::{AssemblyError, Space, System, place};
 use hypercircle_element::{Rule, orthonormal_values};
 use hypercircle_mesh::CellId;
 
 use crate::reference::Reference;
-use hypercircle_assembly::Space;
+use crate::state::{Candidate, SideKind, SideState};
 
 /// A residual below this share of Σ |Kⱼₖ uₖ| + |bⱼ| at every unknown is rounding.
 const ROUNDING: f64 = 1e-13;
@@ -100,12 +100,8 @@ pub(crate) struct Carried {
 }
 
 /// Moments of a flux with divergence r_h in every cell that does not keep it.
-pub(crate) fn flux<const D: usize>(
-    space: &Space<D>,
-    terms: &Terms<D>,
-    reference: &Reference,
-    density: &[f64],
-) -> Carried {
+pub(crate) fn flux<const D: usize>(candidate: &Candidate<'_, D>, reference: &Reference, density: &[f64]) -> Carried {
+    let space = candidate.space;
     let mesh = space.mesh();
     let (n, tests, per_side) = (reference.moments, reference.test_count, reference.side_moments);
     let local = space.basis().nodes().len();
@@ -122,7 +118,7 @@ pub(crate) fn flux<const D: usize>(
             moments.iter_mut().zip(&values[q]).for_each(|(m, v)| *m += w * determinant * r * v);
         }
     }
-    let (order, parents) = ways_out(space, terms);
+    let (order, parents) = ways_out(candidate, reference);
     // From the far ends of the tree inwards: each cell passes on its own excess and what has come in.
     let mut moments = vec![0.0; mesh.cell_count() * n];
     let sides = reference.shape.vertex_count();
@@ -145,7 +141,8 @@ pub(crate) fn flux<const D: usize>(
 /// A tree of least resistance (Σ 1/A over the cells passed): cells in the order in which they are reached from
 /// the exits, and for each the side that leads out. Cells with a reaction may also keep what reaches them, at the
 /// resistance 1/(c |K|^{2/D}).
-fn ways_out<const D: usize>(space: &Space<D>, terms: &Terms<D>) -> (Vec<CellId>, Vec<Option<u8>>) {
+fn ways_out<const D: usize>(candidate: &Candidate<'_, D>, reference: &Reference) -> (Vec<CellId>, Vec<Option<u8>>) {
+    let Candidate { space, terms, .. } = candidate;
     let mesh = space.mesh();
     let center = space.basis().shape().vertices().iter().fold([0.0; 2], |sum, v| [sum[0] + v[0], sum[1] + v[1]]);
     let center = center.map(|x| x / space.basis().shape().vertex_count() as f64);
@@ -154,11 +151,8 @@ fn ways_out<const D: usize>(space: &Space<D>, terms: &Terms<D>) -> (Vec<CellId>,
     let mut best = vec![f64::INFINITY; mesh.cell_count()];
     let mut heap = BinaryHeap::new();
     for side in terms.condition_sides(mesh) {
-        let open = match side.condition {
-            Condition::Dirichlet(_) => true,
-            Condition::Neumann(_) => false,
-            Condition::Robin { film, .. } => film.at(&place(mesh, side.cell, &center)) > 0.0,
-        };
+        let kind = SideState::visit(candidate, reference, side.cell, side.local).kind;
+        let open = matches!(kind, SideKind::Dirichlet | SideKind::Robin(..));
         let own = resistance(side.cell);
         if open && own < best[side.cell.index()] {
             best[side.cell.index()] = own;

@@ -78,7 +78,7 @@ impl<const D: usize> Certificate<D> {
         let candidate = Candidate { space, terms, u, density: density.as_deref() };
         let reference = Reference::new(space, 0)?;
         let mut moments = equilibrate(&candidate, &reference)?;
-        let carried = density.as_ref().map(|density| algebra::flux(space, terms, &reference, density));
+        let carried = density.as_ref().map(|density| algebra::flux(&candidate, &reference, density));
         if let Some(carried) = &carried {
             moments.iter_mut().zip(&carried.moments).for_each(|(m, c)| *m += c);
         }

@@ -12,13 +12,13 @@ pub(crate) struct Ticks {
 }
 
 impl Ticks {
-    /// At most `count` (but at least two) round steps in a range of finite length.
+    /// At most `count` round steps in a range of finite length.
     pub(crate) fn new(low: f64, high: f64, count: usize) -> Self {
         let span = high - low;
         if span.is_nan() || span <= 0.0 {
             return Self::labelled(vec![low], f64::max(low.abs(), f64::MIN_POSITIVE) * 1e-3);
         }
-        let step = round_step(span / count.max(2) as f64);
+        let step = round_step(span / count.max(1) as f64);
         // A hair of tolerance lets an end that is round up to rounding errors be a tick.
         let first = (low / step - 1e-6).ceil();
         let last = (high / step + 1e-6).floor();

@@ -106,7 +106,7 @@ fn caption(svg: &mut Svg, layout: &Layout, text: &str, bar: &Bar<'_>) {
         let lines = wrap(text, TEXT, layout.width() - x - 4.0);
         for (i, line) in lines.iter().enumerate() {
             let up = (lines.len() - 1 - i) as f64 * (TEXT + 2.0);
-            svg.text([x, y - 8.0 - up], TEXT, Anchor::Start, line);
+            svg.text([x, y - 11.0 - up], TEXT, Anchor::Start, line);
         }
     } else {
         svg.text([x + 0.5 * bar.length, y + WIDTH + 35.0], TEXT, Anchor::Middle, text);

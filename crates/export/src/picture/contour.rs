@@ -12,12 +12,12 @@ pub(crate) fn levels(low: f64, high: f64, count: usize) -> Vec<f64> {
         return Vec::new();
     }
     let edge = 1e-6 * (high - low);
-    // Of a family as large as asked for, or a little larger, the one closest to the wish.
+    // Of two families of round values, one too small and one too large, the one closer to the wish.
     let inside = |steps: usize| -> Vec<f64> {
         Ticks::new(low, high, steps).values.into_iter().filter(|v| *v > low + edge && *v < high - edge).collect()
     };
     let (few, many) = (inside(count), inside(count.saturating_mul(2)));
-    if many.len() <= count + count / 4 { many } else { few }
+    if many.len() * few.len() <= count.saturating_mul(count) { many } else { few }
 }
 
 /// The segments of one level in all pieces.
@@ -81,7 +81,7 @@ mod tests {
         assert_eq!(levels(0.0, 7.0, 6), [1.0, 2.0, 3.0, 4.0, 5.0, 6.0]);
         for count in 3..30 {
             let n = levels(-0.37, 19.2, count).len();
-            assert!(n <= count + count / 4 && 5 * n + 5 >= 2 * count, "{n} of {count}");
+            assert!(n <= 2 * count + 1 && 2 * n + 2 >= count, "{n} of {count}");
         }
         assert!(levels(20.0, 20.0, 10).is_empty());
         assert!(levels(0.0, 1.0, 0).is_empty());

@@ -63,7 +63,7 @@ impl Layout {
         let bar_beside = wishes.bar && h >= BAR_BESIDE;
         let right_room = if bar_beside { BAR_ROOM[0] } else { 0.0 };
         let width = (left + w + right_room + MARGIN + 10.0).max(LEAST_WIDTH);
-        let title = wrap(wishes.title, TITLE, width - 2.0 * MARGIN);
+        let title = wrap(wishes.title, TITLE * 1.1, width - 2.0 * MARGIN);
         let heading = title.len() as f64 * (TITLE + 5.0) + if wishes.arrow_legend { 22.0 } else { 0.0 };
         let top = MARGIN + heading + if heading > 0.0 { 6.0 } else { 0.0 };
         // A narrow frame stands in the middle.
@@ -81,6 +81,12 @@ impl Layout {
         ]
     }
 
+    /// Left upper corner of the domain's box on the page, and its size.
+    pub(crate) fn domain(&self) -> (Pixel, [f64; 2]) {
+        let [left, top, right, bottom] = self.frame;
+        ([left + FREE, top + FREE], [right - left - 2.0 * FREE, bottom - top - 2.0 * FREE])
+    }
+
     /// Width of the picture.
     pub(crate) fn width(&self) -> f64 {
         self.width
@@ -89,8 +95,10 @@ impl Layout {
     /// Draws title, frame, ticks and the titles of the axes.
     pub(crate) fn draw(&self, svg: &mut Svg, length_unit: &str) {
         let [left, top, right, bottom] = self.frame;
+        let longest = self.title.iter().map(|line| text_width(line, TITLE * 1.1)).fold(0.0, f64::max);
+        let start = left.min(self.width - MARGIN - longest).max(MARGIN);
         for (i, line) in self.title.iter().enumerate() {
-            let at = [MARGIN.max(left.min(MARGIN + 40.0)), MARGIN + TITLE - 2.0 + i as f64 * (TITLE + 5.0)];
+            let at = [start, MARGIN + TITLE - 2.0 + i as f64 * (TITLE + 5.0)];
             svg.styled_text(at, TITLE, Anchor::Start, line, "font-weight=\"bold\"");
         }
         let thin = format!("fill=\"none\" stroke=\"{INK}\" stroke-width=\".8\"");
@@ -123,7 +131,7 @@ pub(crate) fn horizontal_ticks(low: f64, high: f64, length: f64) -> Ticks {
     loop {
         let ticks = Ticks::new(low, high, count);
         let room = length / (ticks.values.len().max(2) - 1) as f64;
-        if count <= 2 || room > text_width(&"0".repeat(ticks.longest()), TEXT) + 10.0 {
+        if count <= 1 || room > text_width(&"0".repeat(ticks.longest()), TEXT) + 10.0 {
             return ticks;
         }
         count -= 1;

@@ -8,6 +8,8 @@ mod contour;
 mod layout;
 mod lines;
 mod pieces;
+mod raster;
+mod scan;
 mod shade;
 mod svg;
 
@@ -113,7 +115,10 @@ impl<'a> Picture<'a> {
         let (low, high) = field.range().unwrap_or((0.0, 0.0));
         let scale = Scale::new(low, high, self.colors);
         let pieces: Vec<Piece> = pieces::pieces(self.mesh, field, |x| layout.to_pixel(x)).collect();
-        shade::bands(svg, pieces.iter().copied(), &scale);
+        if !shade::bands(svg, pieces.iter().copied(), &scale) {
+            let (corner, size) = layout.domain();
+            raster::draw(svg, &pieces, &scale, corner, size)?;
+        }
         let levels = contour::levels(low, high, self.contours);
         contour::draw(svg, &pieces, &scale, &levels);
         bar::draw(svg, layout, field, &scale, &levels);

@@ -124,7 +124,11 @@ pub fn format_interval(value: f64, lower: f64, upper: f64, unit: &str) -> String
         (format!("{value:.places$}"), outward(lower, places, false), outward(upper, places, true))
     } else {
         let places = (decimals + top).max(0) as usize;
-        (format!("{value:.places$e}"), outward_scientific(lower, places, false), outward_scientific(upper, places, true))
+        (
+            format!("{value:.places$e}"),
+            outward_scientific(lower, places, false),
+            outward_scientific(upper, places, true),
+        )
     };
     format!("{value} [{lower}, {upper}]{unit}")
 }

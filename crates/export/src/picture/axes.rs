@@ -74,7 +74,11 @@ fn power_of_ten(m: f64, power: i32) -> f64 {
 
 /// `k` steps; steps below one are divided out so that 3 · 0.1 prints as 0.3.
 fn multiple(k: f64, step: f64) -> f64 {
-    if step < 1.0 && step > 1e-15 { k / (1.0 / step).round().max(1.0) * ((1.0 / step).round() * step) } else { k * step }
+    if step < 1.0 && step > 1e-15 {
+        k / (1.0 / step).round().max(1.0) * ((1.0 / step).round() * step)
+    } else {
+        k * step
+    }
 }
 
 /// A number with a true minus sign and without a sign before zero.

@@ -20,7 +20,9 @@ pub(crate) fn mesh_lines(svg: &mut Svg, mesh: &Mesh<2>, to_pixel: &dyn Fn([f64; 
 /// Draws borders of regions thinner than the outer border.
 pub(crate) fn borders(svg: &mut Svg, mesh: &Mesh<2>, to_pixel: &dyn Fn([f64; 2]) -> Pixel) {
     let style = |width: &str| {
-        format!("fill=\"none\" stroke=\"{INK}\" stroke-width=\"{width}\" stroke-linejoin=\"round\" stroke-linecap=\"round\"")
+        format!(
+            "fill=\"none\" stroke=\"{INK}\" stroke-width=\"{width}\" stroke-linejoin=\"round\" stroke-linecap=\"round\""
+        )
     };
     let inner = sides(mesh, to_pixel, |kind| kind == Kind::BetweenRegions);
     svg.path(&joined(&inner), &style("1"));

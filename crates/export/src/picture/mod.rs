@@ -1,5 +1,6 @@
 //! Pictures of fields as SVG.
 
+mod arrows;
 mod axes;
 mod bar;
 mod borders;
@@ -7,6 +8,7 @@ mod colors;
 mod contour;
 mod layout;
 mod lines;
+mod markers;
 mod pieces;
 mod raster;
 mod scan;
@@ -18,9 +20,11 @@ use std::path::Path;
 use hypercircle_mesh::Mesh;
 
 use self::colors::Scale;
-use self::layout::{Layout, Wishes};
+use self::layout::{Layout, TEXT, Wishes};
+use self::markers::Mark;
 use self::pieces::Piece;
-use self::svg::Svg;
+use self::svg::{Anchor, Svg};
+use crate::vtu::check_cells;
 use crate::{ExportError, Field};
 
 pub use self::colors::Colors;
@@ -37,6 +41,8 @@ pub struct Picture<'a> {
     colors: Colors,
     contours: usize,
     mesh_lines: bool,
+    arrows: Option<(&'a [[f64; 2]], String)>,
+    markers: Vec<([f64; 2], String)>,
 }
 
 impl<'a> Picture<'a> {
@@ -50,6 +56,8 @@ impl<'a> Picture<'a> {
             colors: Colors::default(),
             contours: 0,
             mesh_lines: false,
+            arrows: None,
+            markers: Vec::new(),
         }
     }
 
@@ -89,29 +97,63 @@ impl<'a> Picture<'a> {
         self
     }
 
+    /// Draws one vector for each cell (a flux, say) as arrows on a regular grid, with a legend in this unit.
+    pub fn arrows(mut self, vectors: &'a [[f64; 2]], unit: &str) -> Self {
+        self.arrows = Some((vectors, unit.into()));
+        self
+    }
+
+    /// Marks a point with a text, beside it or, where there is no room, below the picture.
+    pub fn marker(mut self, place: [f64; 2], text: &str) -> Self {
+        self.markers.push((place, text.into()));
+        self
+    }
+
     /// The text of the SVG file.
     ///
     /// # Errors
     /// For arrays that do not fit the mesh, values that are not finite, and a mesh that cannot be drawn to scale.
     pub fn to_svg(&self) -> Result<String, ExportError> {
+        self.check()?;
         let (low, high) = self.mesh.bounding_box();
-        let wishes = Wishes { title: &self.title, bar: self.field.is_some(), arrow_legend: false };
+        let wishes = Wishes { title: &self.title, bar: self.field.is_some(), arrow_legend: self.arrows.is_some() };
         let layout = Layout::new(low, high, wishes)?;
         let mut svg = Svg::default();
         let to_pixel = |x| layout.to_pixel(x);
         if let Some(field) = self.field {
             self.draw_field(&mut svg, &layout, field)?;
         }
-        if self.mesh_lines {
+        if self.mesh_lines || self.field.is_none() {
             borders::mesh_lines(&mut svg, self.mesh, &to_pixel);
         }
         borders::borders(&mut svg, self.mesh, &to_pixel);
+        if let Some((vectors, unit)) = &self.arrows {
+            arrows::draw(&mut svg, &layout, self.mesh, vectors, unit);
+        }
         layout.draw(&mut svg, &self.length_unit);
-        Ok(svg.finish(layout.width(), layout.below + 10.0))
+        let marks: Vec<Mark<'_>> = self.markers.iter().map(|(x, text)| Mark { at: to_pixel(*x), text }).collect();
+        let notes = markers::draw(&mut svg, layout.frame, &marks);
+        for (i, note) in notes.iter().enumerate() {
+            let at = [layout.frame[0].min(24.0), layout.below + 12.0 + i as f64 * (TEXT + 5.0)];
+            svg.text(at, TEXT, Anchor::Start, note);
+        }
+        Ok(svg.finish(layout.width(), layout.below + 10.0 + notes.len() as f64 * (TEXT + 5.0)))
+    }
+
+    fn check(&self) -> Result<(), ExportError> {
+        if let Some(field) = self.field {
+            field.check(self.mesh)?;
+        }
+        if let Some((vectors, _)) = &self.arrows {
+            check_cells(self.mesh, "arrows", vectors.len(), |c| vectors[c].iter().all(|v| v.is_finite()))?;
+        }
+        match self.markers.iter().find(|(x, _)| !x.iter().all(|c| c.is_finite())) {
+            Some((place, text)) => Err(ExportError::Marker { text: text.clone(), place: place.to_vec() }),
+            None => Ok(()),
+        }
     }
 
     fn draw_field(&self, svg: &mut Svg, layout: &Layout, field: &Field) -> Result<(), ExportError> {
-        field.check(self.mesh)?;
         let (low, high) = field.range().unwrap_or((0.0, 0.0));
         let scale = Scale::new(low, high, self.colors);
         let pieces: Vec<Piece> = pieces::pieces(self.mesh, field, |x| layout.to_pixel(x)).collect();

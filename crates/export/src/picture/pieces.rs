@@ -62,11 +62,7 @@ fn sub_triangle(n: usize, cuts: usize) -> [[usize; 2]; 3] {
         row += 1;
     }
     let i = rest / 2;
-    if rest % 2 == 0 {
-        [[i, row], [i + 1, row], [i, row + 1]]
-    } else {
-        [[i + 1, row], [i + 1, row + 1], [i, row + 1]]
-    }
+    if rest % 2 == 0 { [[i, row], [i + 1, row], [i, row + 1]] } else { [[i + 1, row], [i + 1, row + 1], [i, row + 1]] }
 }
 
 /// The Lagrange interpolant of order 1 or 2 at barycentric coordinates.

@@ -48,6 +48,8 @@ mod budget;
 mod diffusion;
 mod energy;
 mod error;
+#[cfg(feature = "export")]
+mod fields;
 mod refine;
 mod results;
 mod solution;

@@ -9,6 +9,6 @@ mod vtu;
 
 pub use error::ExportError;
 pub use field::Field;
-pub use picture::{Colors, Picture};
+pub use picture::{Colors, CurvePicture, Picture};
 pub use table::{Table, format_interval, significant};
 pub use vtu::VtuFile;

@@ -1,7 +1,8 @@
 //! Where everything stands in a picture: frame, axes, color bar, captions.
 
 use super::axes::Ticks;
-use super::svg::{Anchor, INK, Pixel, Svg, text_width, wrap};
+use super::frame::{self, Axis, label_room};
+use super::svg::{Anchor, Pixel, Svg, text_width, wrap};
 use crate::ExportError;
 
 /// Size of ordinary text in pixels.
@@ -13,13 +14,13 @@ const GREATEST: [f64; 2] = [600.0, 470.0];
 /// Free space between the domain and the frame.
 const FREE: f64 = 10.0;
 /// Space around everything.
-const MARGIN: f64 = 14.0;
+pub(crate) const MARGIN: f64 = 14.0;
 /// Least width of a picture, so that titles and legends have room.
 const LEAST_WIDTH: f64 = 360.0;
 /// A frame at least this high has its color bar at the right, a lower one below.
 const BAR_BESIDE: f64 = 190.0;
 /// Room for a color bar beside the frame and below it.
-const BAR_ROOM: [f64; 2] = [96.0, 58.0];
+const BAR_ROOM: [f64; 2] = [114.0, 58.0];
 
 /// The map from the user's coordinates to the page and the places of the parts.
 #[derive(Debug, Clone)]
@@ -59,12 +60,12 @@ impl Layout {
         let [w, h] = size.map(|s| s * scale + 2.0 * FREE);
         let ticks_y = Ticks::new(low[1], high[1], ((h - 20.0) / 42.0).clamp(2.0, 9.0) as usize);
         let ticks_x = horizontal_ticks(low[0], high[0], w - 20.0);
-        let left = MARGIN + 34.0 + text_width(&"0".repeat(ticks_y.longest()), TEXT);
+        let left = MARGIN + 34.0 + label_room(&ticks_y);
         let bar_beside = wishes.bar && h >= BAR_BESIDE;
         let right_room = if bar_beside { BAR_ROOM[0] } else { 0.0 };
         let width = (left + w + right_room + MARGIN + 10.0).max(LEAST_WIDTH);
-        let title = wrap(wishes.title, TITLE * 1.1, width - 2.0 * MARGIN);
-        let heading = title.len() as f64 * (TITLE + 5.0) + if wishes.arrow_legend { 22.0 } else { 0.0 };
+        let title = title_lines(wishes.title, width);
+        let heading = title_height(&title) + if wishes.arrow_legend { 22.0 } else { 0.0 };
         let top = MARGIN + heading + if heading > 0.0 { 6.0 } else { 0.0 };
         // A narrow frame stands in the middle.
         let left = left + 0.5 * (width - (left + w + right_room + MARGIN + 10.0));
@@ -94,34 +95,39 @@ impl Layout {
 
     /// Draws title, frame, ticks and the titles of the axes.
     pub(crate) fn draw(&self, svg: &mut Svg, length_unit: &str) {
-        let [left, top, right, bottom] = self.frame;
-        let longest = self.title.iter().map(|line| text_width(line, TITLE * 1.1)).fold(0.0, f64::max);
-        let start = left.min(self.width - MARGIN - longest).max(MARGIN);
-        for (i, line) in self.title.iter().enumerate() {
-            let at = [start, MARGIN + TITLE - 2.0 + i as f64 * (TITLE + 5.0)];
-            svg.styled_text(at, TITLE, Anchor::Start, line, "font-weight=\"bold\"");
-        }
-        let thin = format!("fill=\"none\" stroke=\"{INK}\" stroke-width=\".8\"");
-        svg.path(&format!("M{left:.1} {top:.1}H{right:.1}V{bottom:.1}H{left:.1}Z"), &thin);
+        draw_title(svg, &self.title, self.frame[0], self.width);
         let [x, y] = &self.ticks;
-        for (value, label) in x.values.iter().zip(&x.labels) {
-            let at = self.to_pixel([*value, self.low[1]])[0];
-            svg.line([at, bottom], [at, bottom + 5.0], &thin);
-            svg.text([at, bottom + 18.0], TEXT, Anchor::Middle, label);
-        }
-        for (value, label) in y.values.iter().zip(&y.labels) {
-            let at = self.to_pixel([self.low[0], *value])[1];
-            svg.line([left - 5.0, at], [left, at], &thin);
-            svg.text([left - 8.0, at + 0.35 * TEXT], TEXT, Anchor::End, label);
-        }
-        svg.text([0.5 * (left + right), bottom + 36.0], TEXT, Anchor::Middle, &x.title("x", length_unit));
-        let aside = left - 22.0 - text_width(&"0".repeat(y.longest()), TEXT);
-        svg.upright_text([aside, 0.5 * (top + bottom)], TEXT, &y.title("y", length_unit));
+        let x_place = |value: f64| self.to_pixel([value, self.low[1]])[0];
+        let y_place = |value: f64| self.to_pixel([self.low[0], value])[1];
+        let x_axis = Axis { ticks: x, title: x.title("x", length_unit), place: &x_place };
+        let y_axis = Axis { ticks: y, title: y.title("y", length_unit), place: &y_place };
+        frame::draw(svg, self.frame, &x_axis, &y_axis);
     }
 
     /// The line right above the frame, for the legend of arrows: its right end.
     pub(crate) fn legend_end(&self) -> Pixel {
         [self.frame[2].max(0.5 * self.width), self.frame[1] - 10.0]
+    }
+}
+
+/// The lines of a title for a picture of this width.
+pub(crate) fn title_lines(title: &str, width: f64) -> Vec<String> {
+    // Bold letters are wider.
+    wrap(title, 1.1 * TITLE, width - 2.0 * MARGIN)
+}
+
+/// Height of a title and the space under it.
+pub(crate) fn title_height(lines: &[String]) -> f64 {
+    lines.len() as f64 * (TITLE + 5.0)
+}
+
+/// Draws a title that begins at the left side of the frame, or further left where it needs the room.
+pub(crate) fn draw_title(svg: &mut Svg, lines: &[String], left: f64, width: f64) {
+    let longest = lines.iter().map(|line| text_width(line, 1.1 * TITLE)).fold(0.0, f64::max);
+    let start = left.min(width - MARGIN - longest).max(MARGIN);
+    for (i, line) in lines.iter().enumerate() {
+        let at = [start, MARGIN + TITLE - 2.0 + i as f64 * (TITLE + 5.0)];
+        svg.styled_text(at, TITLE, Anchor::Start, line, "font-weight=\"bold\"");
     }
 }
 

@@ -6,9 +6,12 @@ mod bar;
 mod borders;
 mod colors;
 mod contour;
+mod curve;
+mod frame;
 mod layout;
 mod lines;
 mod markers;
+mod parabola;
 mod pieces;
 mod raster;
 mod scan;
@@ -28,6 +31,7 @@ use crate::vtu::check_cells;
 use crate::{ExportError, Field};
 
 pub use self::colors::Colors;
+pub use self::curve::CurvePicture;
 pub(crate) use self::svg::escape;
 
 /// A picture of a triangle mesh and what lies on it.

@@ -44,12 +44,14 @@ pub enum ExportError {
         /// The orders that can be shown.
         allowed: &'static [usize],
     },
-    /// Coordinates so large, or so close together, that they cannot be scaled to a picture.
-    #[error("the mesh spans {low:?} to {high:?}, which cannot be drawn to scale; choose another unit of length")]
+    /// Coordinates or values so large, or so close together, that they cannot be scaled to a picture.
+    #[error("{what} spans {low:?} to {high:?}, which cannot be drawn to scale; choose another unit")]
     Extent {
-        /// Lower corner of the box around the mesh.
+        /// The mesh, or the name of the field.
+        what: String,
+        /// Lowest coordinates, or the smallest value.
         low: Vec<f64>,
-        /// Upper corner.
+        /// Highest coordinates, or the largest value.
         high: Vec<f64>,
     },
     /// A marker at coordinates that are infinite or not a number.

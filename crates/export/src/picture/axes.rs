@@ -41,7 +41,7 @@ impl Ticks {
         match (self.power, unit.is_empty()) {
             (0, _) => unit.into(),
             (p, true) => format!("10{}", superscript(p)),
-            (p, false) => format!("10{} {unit}", superscript(p)),
+            (p, false) => format!("10{}\u{A0}{unit}", superscript(p)),
         }
     }
 
@@ -127,7 +127,7 @@ mod tests {
     fn very_large_and_small_numbers_share_a_power() {
         let ticks = Ticks::new(0.0, 4.0e-7, 4);
         assert_eq!((ticks.power, ticks.labels[1].as_str()), (-7, "1"));
-        assert_eq!(ticks.title("w", "m"), "w, 10⁻⁷ m");
+        assert_eq!(ticks.title("w", "m"), "w, 10⁻⁷\u{A0}m");
         assert_eq!(Ticks::new(0.0, 2.0e8, 4).unit(""), "10⁸");
     }
 

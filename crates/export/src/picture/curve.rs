@@ -125,7 +125,7 @@ impl<'a> CurvePicture<'a> {
             }
         }
         let marks: Vec<Mark<'_>> = texts.iter().map(|(p, text)| Mark { at: plot.to_pixel(*p), text }).collect();
-        markers::draw(svg, plot.frame, &marks)
+        markers::draw(svg, plot.frame, &marks, &plot.sampled())
     }
 }
 
@@ -175,7 +175,7 @@ impl Plot {
         let room = if span > 1e-12 * size { 0.14 * span } else { (0.1 * size).max(1e-290) };
         let (low, high) = ([x_low, smallest[1] - room], [x_high, largest[1] + room]);
         if !(x_high > x_low && (x_high - x_low).is_finite() && (high[1] - low[1]).is_finite()) {
-            return Err(ExportError::Extent { low: low.to_vec(), high: high.to_vec() });
+            return Err(ExportError::Extent { what: "the curve".into(), low: low.to_vec(), high: high.to_vec() });
         }
         let ticks = [horizontal_ticks(x_low, x_high, SIZE[0]), Ticks::new(low[1], high[1], 8)];
         let left = MARGIN + 34.0 + label_room(&ticks[1]);
@@ -228,6 +228,17 @@ impl Plot {
             svg.styled_text([0.5 * (a + b), self.frame[1] + 16.0], TEXT, Anchor::Middle, &shown, style);
         }
         notes
+    }
+
+    /// Points of the curve a few pixels apart, for texts to keep clear of.
+    fn sampled(&self) -> Vec<Pixel> {
+        let pixels = |cell: &Parabola| self.to_pixel(cell.end())[0] - self.to_pixel(cell.start())[0];
+        let steps = |cell: &Parabola| (pixels(cell) / 3.0).clamp(1.0, SIZE[0]) as usize;
+        let each = |cell: &Parabola| -> Vec<Pixel> {
+            let n = steps(cell);
+            (0..=n).map(|i| self.to_pixel(cell.at(i as f64 / n as f64))).collect()
+        };
+        self.cells.iter().flat_map(each).collect()
     }
 
     fn draw_grid(&self, svg: &mut Svg) {

@@ -55,7 +55,7 @@ impl Layout {
         let size = [high[0] - low[0], high[1] - low[1]];
         let scale = (GREATEST[0] / size[0]).min(GREATEST[1] / size[1]);
         if !(scale.is_finite() && scale > 0.0 && size.iter().all(|s| *s > 0.0)) {
-            return Err(ExportError::Extent { low: low.to_vec(), high: high.to_vec() });
+            return Err(ExportError::Extent { what: "the mesh".into(), low: low.to_vec(), high: high.to_vec() });
         }
         let [w, h] = size.map(|s| s * scale + 2.0 * FREE);
         let ticks_y = Ticks::new(low[1], high[1], ((h - 20.0) / 42.0).clamp(2.0, 9.0) as usize);
@@ -175,7 +175,7 @@ mod tests {
     #[test]
     fn a_box_that_cannot_be_scaled_is_told() {
         let error = Layout::new([0.0, 0.0], [0.0, 1.0], Wishes::default()).unwrap_err();
-        assert_eq!(error, ExportError::Extent { low: vec![0.0, 0.0], high: vec![0.0, 1.0] });
+        assert_eq!(error, ExportError::Extent { what: "the mesh".into(), low: vec![0.0, 0.0], high: vec![0.0, 1.0] });
         assert!(Layout::new([-1e308, 0.0], [1e308, 1.0], Wishes::default()).is_err());
     }
 }

@@ -34,7 +34,28 @@ pub use self::colors::Colors;
 pub use self::curve::CurvePicture;
 pub(crate) use self::svg::escape;
 
-/// A picture of a triangle mesh and what lies on it.
+/// A picture of a triangle mesh and what lies on it: a shaded field, contour lines, arrows, marked points.
+///
+/// Both axes have one scale. Small meshes are drawn as polygons, big ones as an image inside the file, so that files
+/// stay small. Lines of a mesh of more than 40 000 sides are left out.
+///
+/// ```
+/// use hypercircle_export::{Field, Picture};
+/// use hypercircle_mesh::Rectangle;
+/// let plate = Rectangle::new([0.0, 0.0], [2.0, 1.0], [16, 8]).mesh()?;
+/// let field = Field::of_function(&plate, "temperature", "°C", 2, |x| 20.0 + x[0] * x[1]);
+/// let flux = vec![[-1.0, -0.5]; plate.cell_count()];
+/// let svg = Picture::of(&plate)
+///     .title("Plate with a warm corner")
+///     .length_unit("m")
+///     .field(&field)
+///     .contours(8)
+///     .arrows(&flux, "W/m²")
+///     .marker([2.0, 1.0], "hottest 22.0 °C")
+///     .to_svg()?;
+/// assert!(svg.starts_with("<?xml") && svg.contains("hottest 22.0 °C"));
+/// # Ok::<(), Box<dyn std::error::Error>>(())
+/// ```
 #[derive(Debug, Clone)]
 #[must_use]
 pub struct Picture<'a> {
@@ -136,7 +157,7 @@ impl<'a> Picture<'a> {
         }
         layout.draw(&mut svg, &self.length_unit);
         let marks: Vec<Mark<'_>> = self.markers.iter().map(|(x, text)| Mark { at: to_pixel(*x), text }).collect();
-        let notes = markers::draw(&mut svg, layout.frame, &marks);
+        let notes = markers::draw(&mut svg, layout.frame, &marks, &[]);
         for (i, note) in notes.iter().enumerate() {
             let at = [layout.frame[0].min(24.0), layout.below + 12.0 + i as f64 * (TEXT + 5.0)];
             svg.text(at, TEXT, Anchor::Start, note);
@@ -159,6 +180,9 @@ impl<'a> Picture<'a> {
 
     fn draw_field(&self, svg: &mut Svg, layout: &Layout, field: &Field) -> Result<(), ExportError> {
         let (low, high) = field.range().unwrap_or((0.0, 0.0));
+        if !(2.0 * low.abs().max(high.abs())).is_finite() {
+            return Err(ExportError::Extent { what: field.name().into(), low: vec![low], high: vec![high] });
+        }
         let scale = Scale::new(low, high, self.colors);
         let pieces: Vec<Piece> = pieces::pieces(self.mesh, field, |x| layout.to_pixel(x)).collect();
         if !shade::bands(svg, pieces.iter().copied(), &scale) {

@@ -26,6 +26,13 @@ impl Parabola {
         [self.x[1], self.u[1]]
     }
 
+    /// The point at a share t of the way from the left to the right end.
+    pub(crate) fn at(&self, t: f64) -> [f64; 2] {
+        let [u, w, v] = self.u;
+        let s = 1.0 - t;
+        [s * self.x[0] + t * self.x[1], s * (s - t) * u + t * (t - s) * w + 4.0 * s * t * v]
+    }
+
     /// The point where the tangents of both ends meet: with the ends it describes the parabola exactly.
     pub(crate) fn control(&self) -> [f64; 2] {
         [0.5 * (self.x[0] + self.x[1]), 2.0 * self.u[2] - 0.5 * (self.u[0] + self.u[1])]
@@ -64,6 +71,12 @@ mod tests {
         let [x, u] = curve.control();
         assert_eq!(u, f(0.0) + slope(0.0) * x);
         assert_eq!(u, f(4.0) + slope(4.0) * (x - 4.0));
+    }
+
+    #[test]
+    fn points_of_the_curve_interpolate() {
+        let curve = Parabola::new([0.0, 4.0], &[0.0, 16.0, 4.0]);
+        assert_eq!(curve.at(0.75), [3.0, 9.0]);
     }
 
     #[test]

@@ -113,10 +113,10 @@ pub(crate) fn text_width(text: &str, size: f64) -> f64 {
     0.56 * size * text.chars().count() as f64
 }
 
-/// Breaks a text between words into lines of a greatest width.
+/// Breaks a text at its spaces (not at those marked as unbreakable) into lines of a greatest width.
 pub(crate) fn wrap(text: &str, size: f64, width: f64) -> Vec<String> {
     let mut lines: Vec<String> = Vec::new();
-    for word in text.split_whitespace() {
+    for word in text.split([' ', '\t', '\n', '\r']).filter(|word| !word.is_empty()) {
         match lines.last_mut() {
             Some(line) if text_width(line, size) + text_width(word, size) + size < width => {
                 line.push(' ');

@@ -81,7 +81,7 @@ impl Bar<'_> {
     fn draw_ticks(&self, svg: &mut Svg) -> Ticks {
         let (low, high) = (self.scale.low, self.scale.high);
         let ticks = if self.upright {
-            Ticks::new(low, high, (self.length / 45.0).clamp(2.0, 9.0) as usize)
+            Ticks::new(low, high, (self.length / 34.0).clamp(2.0, 12.0) as usize)
         } else {
             horizontal_ticks(low, high, self.length)
         };

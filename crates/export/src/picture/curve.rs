@@ -90,11 +90,8 @@ impl<'a> CurvePicture<'a> {
         frame::draw(&mut svg, plot.frame, &x_axis, &y_axis);
         notes.extend(self.draw_marks(&mut svg, &plot));
         draw_title(&mut svg, &plot.title, plot.frame[0], plot.width());
-        let below = plot.frame[3] + 44.0;
-        for (i, note) in notes.iter().enumerate() {
-            svg.text([plot.frame[0], below + 12.0 + i as f64 * (TEXT + 5.0)], TEXT, Anchor::Start, note);
-        }
-        Ok(svg.finish(plot.width(), below + 10.0 + notes.len() as f64 * (TEXT + 5.0)))
+        let height = svg.notes(&notes, plot.frame[0], plot.frame[3] + 44.0, plot.width());
+        Ok(svg.finish(plot.width(), height))
     }
 
     /// Writes the SVG file.

@@ -23,10 +23,10 @@ use std::path::Path;
 use hypercircle_mesh::Mesh;
 
 use self::colors::Scale;
-use self::layout::{Layout, TEXT, Wishes};
+use self::layout::{Layout, Wishes};
 use self::markers::Mark;
 use self::pieces::Piece;
-use self::svg::{Anchor, Svg};
+use self::svg::Svg;
 use crate::vtu::check_cells;
 use crate::{ExportError, Field};
 
@@ -158,11 +158,8 @@ impl<'a> Picture<'a> {
         layout.draw(&mut svg, &self.length_unit);
         let marks: Vec<Mark<'_>> = self.markers.iter().map(|(x, text)| Mark { at: to_pixel(*x), text }).collect();
         let notes = markers::draw(&mut svg, layout.frame, &marks, &[]);
-        for (i, note) in notes.iter().enumerate() {
-            let at = [layout.frame[0].min(24.0), layout.below + 12.0 + i as f64 * (TEXT + 5.0)];
-            svg.text(at, TEXT, Anchor::Start, note);
-        }
-        Ok(svg.finish(layout.width(), layout.below + 10.0 + notes.len() as f64 * (TEXT + 5.0)))
+        let height = svg.notes(&notes, layout.frame[0].min(24.0), layout.below, layout.width());
+        Ok(svg.finish(layout.width(), height))
     }
 
     fn check(&self) -> Result<(), ExportError> {

@@ -8,6 +8,9 @@ const FONTS: &str = "Helvetica, Arial, 'Liberation Sans', 'DejaVu Sans', sans-se
 /// Color of text, frame and borders.
 pub(crate) const INK: &str = "#1a1a1a";
 
+/// Size of notes in pixels.
+const NOTE: f64 = 12.0;
+
 /// A point of the picture in pixels, y downwards.
 pub(crate) type Pixel = [f64; 2];
 
@@ -74,6 +77,16 @@ impl Svg {
             self.body,
             "<text x=\"{x}\" y=\"{y}\" font-size=\"{size}\" text-anchor=\"{anchor}\" {attributes}>{text}</text>"
         );
+    }
+
+    /// Notes below a picture, broken into lines where they are long; gives the height of the picture with them.
+    pub(crate) fn notes(&mut self, notes: &[String], left: f64, top: f64, width: f64) -> f64 {
+        let mut y = top + 12.0;
+        for line in notes.iter().flat_map(|note| wrap(note, NOTE, width - left - 10.0)) {
+            self.text([left, y], NOTE, Anchor::Start, &line);
+            y += NOTE + 5.0;
+        }
+        y
     }
 
     /// The whole picture on white.
@@ -162,6 +175,15 @@ mod tests {
     #[test]
     fn markup_in_a_text_is_escaped() {
         assert_eq!(escape("a<b & \"c\"\u{1}"), "a&lt;b &amp; &quot;c&quot;");
+    }
+
+    #[test]
+    fn notes_stay_within_the_width_and_above_the_lower_end() {
+        let mut svg = Svg::default();
+        let height = svg.notes(&["a note of several words that is long".into()], 20.0, 100.0, 150.0);
+        let text = svg.finish(150.0, height);
+        assert_eq!(text.matches("<text").count(), 3, "{text}");
+        assert!(height > 100.0 + 3.0 * NOTE);
     }
 
     #[test]

@@ -49,7 +49,7 @@ impl<const D: usize> Solution<D> {
         let positions = space.positions();
         let coordinates: Vec<f64> = reduced.free.iter().flat_map(|unknown| positions[*unknown as usize]).collect();
         let linear = LinearSystem {
-            matrix: CsrView::from(&reduced.matrix),
+            matrix: CsrView::try_from(&reduced.matrix)?,
             load: &reduced.load,
             coordinates: Some(Coordinates::new(D, &coordinates)?),
         };

@@ -2,11 +2,14 @@
 
 use faer::dyn_stack::{MemBuffer, MemStack};
 use faer::perm::PermRef;
-use faer::sparse::linalg::cholesky::{LltRef, SymbolicCholesky, SymmetricOrdering, factorize_symbolic_cholesky};
+use faer::sparse::linalg::SupernodalThreshold;
+use faer::sparse::linalg::cholesky::{
+    CholeskySymbolicParams, LltRef, SymbolicCholesky, SymmetricOrdering, factorize_symbolic_cholesky,
+};
 use faer::sparse::{FaerError, SparseColMatRef, SymbolicSparseColMatRef};
 use faer::{Conj, MatMut, Par, Side};
 
-use crate::{CsrView, LinearSolver, LinearSystem, Outcome, SolveError, nested_dissection};
+use crate::{LinearSolver, LinearSystem, Outcome, SolveError, nested_dissection};
 
 /// Rounds of iterative refinement after the first solve: one brings the backward error down to rounding.
 const REFINEMENTS: usize = 1;
@@ -66,6 +69,7 @@ impl Direct {
         if kept.factor.is_empty() || kept.values != matrix.values() {
             let needed = kept.symbolic.len_val() * size_of::<f64>();
             if let Some(allowed) = self.budget.filter(|allowed| needed > *allowed) {
+                self.kept = Some(kept);
                 return Err(SolveError::OverBudget { needed, allowed });
             }
             kept.factor.resize(kept.symbolic.len_val(), 0.0);
@@ -96,15 +100,20 @@ fn analyze(system: &LinearSystem<'_>) -> Result<Kept, SolveError> {
     let columns = matrix.columns().to_vec();
     // Rows of a symmetric matrix are its columns; the view was checked when it was made.
     let pattern = SymbolicSparseColMatRef::new_checked(n, n, &offsets, None, &columns);
+    // One kind of factor for all sizes, so that pivots are counted in one way.
+    let params = CholeskySymbolicParams {
+        supernodal_flop_ratio_threshold: SupernodalThreshold::FORCE_SUPERNODAL,
+        ..Default::default()
+    };
     let symbolic = match system.coordinates {
         Some(places) => {
-            let forward = nested_dissection(matrix, places);
+            let forward = nested_dissection(matrix, places)?;
             let mut inverse = vec![0; n];
             forward.iter().enumerate().for_each(|(k, u)| inverse[*u as usize] = k as u32);
             let order = SymmetricOrdering::Custom(PermRef::new_checked(&forward, &inverse, n));
-            factorize_symbolic_cholesky(pattern, Side::Lower, order, Default::default())
+            factorize_symbolic_cholesky(pattern, Side::Lower, order, params)
         }
-        None => factorize_symbolic_cholesky(pattern, Side::Lower, SymmetricOrdering::Amd, Default::default()),
+        None => factorize_symbolic_cholesky(pattern, Side::Lower, SymmetricOrdering::Amd, params),
     };
     Ok(Kept { offsets, columns, values: Vec::new(), symbolic: symbolic.map_err(failed)?, factor: Vec::new() })
 }
@@ -128,9 +137,13 @@ fn numeric(kept: &mut Kept) -> Result<(), SolveError> {
     match outcome {
         Ok(_) => Ok(()),
         Err(faer::linalg::cholesky::llt::factor::LltError::NonPositivePivot { index }) => {
-            // The pivot counts in the order of elimination.
-            let order = kept.symbolic.perm().map(|perm| perm.arrays().0[index.min(n - 1)] as usize);
-            Err(SolveError::NotPositiveDefinite { unknown: order.unwrap_or(index) })
+            // A diagonal entry that is not positive is the plain cause; else the pivot, counted in the order of elimination,
+            // tells the neighborhood: it is found out for a block of columns at once.
+            let at = |i: usize| kept.offsets[i] as usize..kept.offsets[i + 1] as usize;
+            let positive = |i: usize| at(i).any(|k| kept.columns[k] as usize == i && kept.values[k] > 0.0);
+            let pivot = kept.symbolic.perm().map(|perm| perm.arrays().0[index.min(n - 1)] as usize);
+            let unknown = (0..n).find(|i| !positive(*i)).or(pivot).unwrap_or(index);
+            Err(SolveError::NotPositiveDefinite { unknown })
         }
     }
 }
@@ -168,7 +181,8 @@ impl LinearSolver for Direct {
         kept.solve_in_place(solution)?;
         let mut residual = vec![0.0; n];
         for _ in 0..REFINEMENTS {
-            residual_of(system.matrix, system.load, solution, &mut residual);
+            system.matrix.multiply(solution, &mut residual)?;
+            residual.iter_mut().zip(system.load).for_each(|(r, b)| *r = b - *r);
             kept.solve_in_place(&mut residual)?;
             solution.iter_mut().zip(&residual).for_each(|(x, d)| *x += d);
         }
@@ -179,15 +193,10 @@ impl LinearSolver for Direct {
     }
 }
 
-fn residual_of(matrix: CsrView<'_>, load: &[f64], x: &[f64], residual: &mut [f64]) {
-    matrix.multiply(x, residual);
-    residual.iter_mut().zip(load).for_each(|(r, b)| *r = b - *r);
-}
-
 #[cfg(test)]
 mod tests {
     use super::*;
-    use crate::Coordinates;
+    use crate::{Coordinates, CsrView};
 
     #[test]
     fn indefinite_matrix_and_small_budget_are_told() {
@@ -195,6 +204,10 @@ mod tests {
         let system = LinearSystem { matrix, load: &[1.0, 1.0], coordinates: None };
         let told = Direct::default().solve(&system, &mut [0.0; 2]).unwrap_err();
         assert!(matches!(told, SolveError::NotPositiveDefinite { .. }));
+        let diagonal = CsrView::new(&[0, 1, 2, 3], &[0, 1, 2], &[1.0, -1.0, 1.0]).unwrap();
+        let told = Direct::default()
+            .solve(&LinearSystem { matrix: diagonal, load: &[1.0; 3], coordinates: None }, &mut [0.0; 3]);
+        assert_eq!(told.unwrap_err(), SolveError::NotPositiveDefinite { unknown: 1 });
         let told = Direct::within(7).solve(&system, &mut [0.0; 2]).unwrap_err();
         assert!(matches!(told, SolveError::OverBudget { allowed: 7, .. }));
     }

@@ -8,7 +8,7 @@
 use std::sync::atomic::AtomicBool;
 use std::sync::atomic::Ordering::Relaxed;
 
-use crate::{Coordinates, CsrView};
+use crate::{Coordinates, CsrView, SolveError};
 
 /// Parts of at most so many unknowns are not divided further.
 const LEAF: usize = 48;
@@ -21,17 +21,24 @@ const PARALLEL: usize = 8192;
 /// use hypercircle_solve::{nested_dissection, Coordinates, CsrView};
 /// let matrix = CsrView::new(&[0, 1, 2], &[0, 1], &[1.0, 1.0])?;
 /// let places = Coordinates::new(1, &[0.0, 1.0])?;
-/// let mut order = nested_dissection(matrix, places);
+/// let mut order = nested_dissection(matrix, places)?;
 /// order.sort_unstable();
 /// assert_eq!(order, vec![0, 1]);
 /// # Ok::<(), hypercircle_solve::SolveError>(())
 /// ```
-#[must_use]
-pub fn nested_dissection(matrix: CsrView<'_>, places: Coordinates<'_>) -> Vec<u32> {
+///
+/// # Errors
+/// A number of places that is not that of the rows, or a matrix that is not symmetric.
+pub fn nested_dissection(matrix: CsrView<'_>, places: Coordinates<'_>) -> Result<Vec<u32>, SolveError> {
+    if places.len() != matrix.len() {
+        let (given, expected) = (places.len(), matrix.len());
+        return Err(SolveError::SizeMismatch { what: "list of coordinates", given, expected });
+    }
+    matrix.check_symmetric()?;
     let mut unknowns: Vec<u32> = (0..matrix.len() as u32).collect();
     let separated: Vec<AtomicBool> = (0..matrix.len()).map(|_| AtomicBool::new(false)).collect();
     dissect(matrix, places, &separated, &mut unknowns);
-    unknowns
+    Ok(unknowns)
 }
 
 /// Orders one part. A neighbor of a member is a member too, or was separated before: the flags of others are never read
@@ -128,7 +135,7 @@ mod tests {
         let (offsets, columns, values) = rectangular(side);
         let matrix = CsrView::new(&offsets, &columns, &values).unwrap();
         let flat: Vec<f64> = (0..side * side).flat_map(|k| [(k % side) as f64, (k / side) as f64]).collect();
-        let order = nested_dissection(matrix, Coordinates::new(2, &flat).unwrap());
+        let order = nested_dissection(matrix, Coordinates::new(2, &flat).unwrap()).unwrap();
         let mut sorted = order.clone();
         sorted.sort_unstable();
         assert!(sorted.iter().enumerate().all(|(i, u)| i == *u as usize));
@@ -148,7 +155,7 @@ mod tests {
         let orders: Vec<_> = [1, 2, 3]
             .map(|threads| {
                 let pool = rayon::ThreadPoolBuilder::new().num_threads(threads).build().unwrap();
-                pool.install(|| nested_dissection(matrix, places))
+                pool.install(|| nested_dissection(matrix, places).unwrap())
             })
             .into();
         assert!(orders[0] == orders[1] && orders[1] == orders[2]);

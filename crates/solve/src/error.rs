@@ -40,6 +40,20 @@ pub enum SolveError {
         /// Its value.
         value: f64,
     },
+    /// An entry of the start value is NaN or infinite.
+    #[error("the start value of unknown {unknown} is {value}: start from zero or from finite numbers")]
+    StartNotFinite {
+        /// Which unknown.
+        unknown: usize,
+        /// Its value.
+        value: f64,
+    },
+    /// A tolerance that nothing can meet.
+    #[error("the relative tolerance is {value}: give a positive number")]
+    Tolerance {
+        /// What was given.
+        value: f64,
+    },
     /// A pair of entries that differ.
     #[error(
         "the matrix is not symmetric: entry ({row}, {column}) is {value}, its mirror image is {mirrored}; use a method for general matrices"
@@ -59,7 +73,7 @@ pub enum SolveError {
         "the matrix is not positive definite, seen at unknown {unknown}: look for a part that nothing holds or a negative coefficient"
     )]
     NotPositiveDefinite {
-        /// Where it was found out.
+        /// Where it was found out, or a neighbor eliminated together with it.
         unknown: usize,
     },
     /// An iteration did not come to its end.

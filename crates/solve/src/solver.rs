@@ -60,7 +60,7 @@ pub struct LinearSystem<'a> {
 }
 
 impl LinearSystem<'_> {
-    /// Checks sizes and that every number is finite.
+    /// Checks sizes, that every number is finite, and that the matrix is symmetric.
     ///
     /// # Errors
     /// The first misfit, with its place.
@@ -75,6 +75,9 @@ impl LinearSystem<'_> {
                 return Err(SolveError::SizeMismatch { what, given, expected });
             }
         }
+        if let Some(unknown) = solution.iter().position(|x| !x.is_finite()) {
+            return Err(SolveError::StartNotFinite { unknown, value: solution[unknown] });
+        }
         if let Some(unknown) = self.load.iter().position(|b| !b.is_finite()) {
             return Err(SolveError::LoadNotFinite { unknown, value: self.load[unknown] });
         }
@@ -83,7 +86,7 @@ impl LinearSystem<'_> {
             let (column, value) = (self.matrix.columns()[k] as usize, self.matrix.values()[k]);
             return Err(SolveError::MatrixNotFinite { row, column, value });
         }
-        Ok(())
+        self.matrix.check_symmetric()
     }
 }
 
@@ -151,7 +154,7 @@ pub fn check_solver(solver: &mut dyn LinearSolver) -> Result<(), SolveError> {
         let n = matrix.len();
         let expected: Vec<f64> = (0..n).map(|i| 1.0 + (i % 7) as f64).collect();
         let mut load = vec![0.0; n];
-        matrix.multiply(&expected, &mut load);
+        matrix.multiply(&expected, &mut load)?;
         let mut solution = vec![0.0; n];
         let outcome = solver.solve(&LinearSystem { matrix, load: &load, coordinates: None }, &mut solution)?;
         let wrong = solution.iter().zip(&expected).map(|(a, b)| (a - b).abs()).fold(0.0, f64::max);

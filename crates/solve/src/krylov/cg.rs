@@ -37,6 +37,9 @@ impl Default for ConjugateGradients {
 impl LinearSolver for ConjugateGradients {
     fn solve(&mut self, system: &LinearSystem<'_>, x: &mut [f64]) -> Result<Outcome, SolveError> {
         system.check(x)?;
+        if !(self.relative_tolerance > 0.0) {
+            return Err(SolveError::Tolerance { value: self.relative_tolerance });
+        }
         let n = x.len();
         let matrix = system.matrix;
         let diagonal = matrix.diagonal();
@@ -47,14 +50,14 @@ impl LinearSolver for ConjugateGradients {
         let (mut r, mut z, mut ap) = (vec![0.0; n], vec![0.0; n], vec![0.0; n]);
         scale(system.load, &mut z);
         let size = dot(system.load, &z).sqrt();
-        matrix.multiply(x, &mut r);
+        matrix.multiply(x, &mut r)?;
         r.iter_mut().zip(system.load).for_each(|(r, b)| *r = b - *r);
         scale(&r, &mut z);
         let mut p = z.clone();
         let mut rz = dot(&r, &z);
         let mut history = Vec::new();
         let reached = |rz: f64| if size > 0.0 { rz.sqrt() / size } else { rz.sqrt() };
-        while reached(rz) > self.relative_tolerance {
+        while !(reached(rz) <= self.relative_tolerance) {
             let iterations = history.len();
             if self.cancel.is_some_and(|cancel| cancel()) {
                 return Err(SolveError::Cancelled { iterations, best: x.to_vec() });
@@ -69,7 +72,7 @@ impl LinearSolver for ConjugateGradients {
                     advice: "allow more iterations, ask for less, or use the direct solver",
                 });
             }
-            matrix.multiply(&p, &mut ap);
+            matrix.multiply(&p, &mut ap)?;
             let curvature = dot(&p, &ap);
             if !(curvature > 0.0) {
                 let worst = |a: &usize, b: &usize| (p[*a] * ap[*a]).total_cmp(&(p[*b] * ap[*b]));
@@ -117,6 +120,8 @@ mod tests {
         assert!(matches!(told, SolveError::NotPositiveDefinite { unknown: 0 }));
         let told = solve(&[2.0, 1.0, 1.0, 3.0], ConjugateGradients { most_iterations: 1, ..default });
         assert!(matches!(told, SolveError::NotConverged { iterations: 1, history, .. } if history.len() == 1));
+        let told = solve(&[2.0, 1.0, 1.0, 3.0], ConjugateGradients { relative_tolerance: f64::NAN, ..default });
+        assert!(matches!(told, SolveError::Tolerance { .. }));
         let told = solve(&[2.0, 1.0, 1.0, 3.0], ConjugateGradients { cancel: Some(|| true), ..default });
         assert!(matches!(told, SolveError::Cancelled { iterations: 0, .. }));
     }

@@ -21,6 +21,15 @@ struct Sample {
     vector: [f64; 2],
 }
 
+impl Sample {
+    /// Tail and tip of the arrow, whose middle is the grid point.
+    fn ends(&self, scale: f64) -> [Pixel; 2] {
+        // y of the page points downwards.
+        let half = [0.5 * scale * self.vector[0], -0.5 * scale * self.vector[1]];
+        [[self.at[0] - half[0], self.at[1] - half[1]], [self.at[0] + half[0], self.at[1] + half[1]]]
+    }
+}
+
 /// Draws one vector for each cell, sampled on a grid, and a legend with a round length.
 pub(crate) fn draw(svg: &mut Svg, layout: &Layout, mesh: &Mesh<2>, vectors: &[[f64; 2]], unit: &str) {
     let (corner, size) = layout.domain();
@@ -29,11 +38,8 @@ pub(crate) fn draw(svg: &mut Svg, layout: &Layout, mesh: &Mesh<2>, vectors: &[[f
     let scale = pixels_per_unit(&samples, spacing);
     let (mut shafts, mut heads, mut dots) = (String::new(), String::new(), String::new());
     for sample in &samples {
-        // Arrows are centered on their grid points; y of the page points downwards.
-        let [dx, dy] = [sample.vector[0] * scale, -sample.vector[1] * scale];
-        let (from, to) =
-            ([sample.at[0] - 0.5 * dx, sample.at[1] - 0.5 * dy], [sample.at[0] + 0.5 * dx, sample.at[1] + 0.5 * dy]);
-        if dx.hypot(dy) < SHORTEST {
+        let [from, to] = sample.ends(scale);
+        if (to[0] - from[0]).hypot(to[1] - from[1]) < SHORTEST {
             dots += &polyline(&[sample.at, [sample.at[0] + 0.01, sample.at[1]]], false);
         } else {
             shafts += &polyline(&[from, to], false);
@@ -130,6 +136,12 @@ mod tests {
         for s in found {
             assert!((s.at[0] - s.vector[0]).abs() < 50.0 && (s.at[1] - s.vector[1]).abs() < 35.0);
         }
+    }
+
+    #[test]
+    fn a_vector_upwards_points_to_the_top_of_the_page() {
+        let sample = Sample { at: [50.0, 50.0], vector: [3.0, 4.0] };
+        assert_eq!(sample.ends(2.0), [[47.0, 54.0], [53.0, 46.0]]);
     }
 
     #[test]

@@ -54,8 +54,8 @@ pub enum ExportError {
         /// Highest coordinates, or the largest value.
         high: Vec<f64>,
     },
-    /// A marker at coordinates that are infinite or not a number.
-    #[error("marker {text:?} is at {place:?}, which is no place; give finite coordinates")]
+    /// A marker outside of the picture, or at coordinates that are not a number.
+    #[error("marker {text:?} is at {place:?}, outside of the picture; give coordinates inside the box around the mesh")]
     Marker {
         /// The text of the marker.
         text: String,

@@ -112,16 +112,17 @@ pub fn format_interval(value: f64, lower: f64, upper: f64, unit: &str) -> String
     let largest = value.abs().max(lower.abs()).max(upper.abs());
     let unit = if unit.is_empty() { String::new() } else { format!(" {unit}") };
     if !(width.is_finite() && largest.is_finite()) || largest == 0.0 {
-        return format!("{value} [{lower}, {upper}]{unit}");
+        return format!("{} [{}, {}]{unit}", in_full(value), in_full(lower), in_full(upper));
     }
     let top = exponent_of(&format!("{largest:e}"));
-    // Decimals such that the width shows two digits, but never more than a double holds. (1.0e-3 → 4 decimals)
-    let finest = 15 - top;
+    // Decimals such that the width shows two digits (1.0e-3 → 4 decimals), but never more than 15 digits in all: so
+    // many any double tells apart, and the next printed number outwards is a double of its own.
+    let finest = 14 - top;
     let wanted = if width > 0.0 { 1 - exponent_of(&format!("{width:e}")) } else { finest };
     let decimals = wanted.min(finest);
     let (value, lower, upper) = if (-7..=7).contains(&top) {
         let places = decimals.max(0) as usize;
-        (format!("{value:.places$}"), outward(lower, places, false), outward(upper, places, true))
+        (fixed(value, places), outward(lower, places, false), outward(upper, places, true))
     } else {
         let places = (decimals + top).max(0) as usize;
         (
@@ -133,6 +134,21 @@ pub fn format_interval(value: f64, lower: f64, upper: f64, unit: &str) -> String
     format!("{value} [{lower}, {upper}]{unit}")
 }
 
+/// A number in its shortest exact form, with an exponent where that is shorter.
+fn in_full(x: f64) -> String {
+    let scientific = format!("{x:e}");
+    if x.is_finite() && !(-7..=14).contains(&exponent_of(&scientific)) { scientific } else { x.to_string() }
+}
+
+/// `x` with `places` decimals, zero without a sign.
+fn fixed(x: f64, places: usize) -> String {
+    let text = format!("{x:.places$}");
+    match text.strip_prefix('-') {
+        Some(rest) if rest.bytes().all(|b| b == b'0' || b == b'.') => rest.into(),
+        _ => text,
+    }
+}
+
 /// The decimal exponent in a number printed as `1.5e-3`.
 fn exponent_of(scientific: &str) -> i32 {
     scientific.rsplit('e').next().and_then(|e| e.parse().ok()).unwrap_or(0)
@@ -140,7 +156,7 @@ fn exponent_of(scientific: &str) -> i32 {
 
 /// `x` with `places` decimals, rounded up or down, judged by the printed text itself.
 fn outward(x: f64, places: usize, up: bool) -> String {
-    step_out(x, up, |y| format!("{y:.places$}"), 10f64.powi(-(places as i32)))
+    step_out(x, up, |y| fixed(y, places), 10f64.powi(-(places as i32)))
 }
 
 /// The same in scientific notation.
@@ -210,8 +226,31 @@ mod tests {
     }
 
     #[test]
+    fn intervals_near_the_last_digit_of_a_double_are_enclosed_too() {
+        for i in 1..20_000_u64 {
+            // Neighboring doubles all over the decades.
+            let lower = (i as f64).sqrt() * 10f64.powi((i % 41) as i32 - 20);
+            let upper = f64::from_bits(lower.to_bits() + i % 5);
+            let text = format_interval(lower, lower, upper, "");
+            let (a, b) = text.split(['[', ']']).nth(1).unwrap().split_once(", ").unwrap();
+            assert!(a.parse::<f64>().unwrap() <= lower && b.parse::<f64>().unwrap() >= upper, "{text} {lower} {upper}");
+        }
+    }
+
+    #[test]
+    fn numbers_too_large_for_an_interval_stay_short() {
+        assert_eq!(format_interval(1.5e308, -1.5e308, 1.5e308, "W"), "1.5e308 [-1.5e308, 1.5e308] W");
+        assert_eq!(format_interval(f64::NAN, 0.0, f64::INFINITY, ""), "NaN [0, inf]");
+    }
+
+    #[test]
+    fn zero_has_no_sign() {
+        assert_eq!(format_interval(-0.0001, -0.0002, 0.5, ""), "0.00 [-0.01, 0.50]");
+    }
+
+    #[test]
     fn a_point_interval_is_printed_in_full() {
         assert_eq!(format_interval(0.0, 0.0, 0.0, "W"), "0 [0, 0] W");
-        assert!(format_interval(1.0, 1.0, 1.0, "W").starts_with("1.000000000000000 ["));
+        assert_eq!(format_interval(1.0, 1.0, 1.0, ""), "1.00000000000000 [1.00000000000000, 1.00000000000000]");
     }
 }

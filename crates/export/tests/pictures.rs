@@ -64,7 +64,7 @@ fn any_shape_and_size_of_domain_is_laid_out() {
 #[test]
 fn constant_fields_of_any_size_have_a_picture() {
     let mesh = rectangle(1.0, 1.0, [2, 2]);
-    for value in [0.0, 20.0, -1e-300, 1e300] {
+    for value in [0.0, 20.0, 5e-324, -1e-300, 1e300] {
         for colors in [Colors::Sequential, Colors::Diverging] {
             let field = Field::of_function(&mesh, "u", "", 2, |_| value);
             texts(&Picture::of(&mesh).field(&field).colors(colors).contours(8).to_svg().unwrap());
@@ -100,8 +100,10 @@ fn bad_input_is_told_with_its_place() {
     assert!(matches!(error, ExportError::NotFinite { cell: 0, .. }));
     let error = Picture::of(&mesh).arrows(&[[0.0; 2]], "").to_svg().unwrap_err();
     assert!(matches!(error, ExportError::WrongLength { given: 1, expected: 2, .. }));
-    let error = Picture::of(&mesh).marker([f64::NAN, 0.0], "here").to_svg().unwrap_err();
-    assert!(matches!(error, ExportError::Marker { .. }));
+    for place in [[f64::NAN, 0.0], [0.5, 3.0], [-1e308, 0.5]] {
+        let error = Picture::of(&mesh).marker(place, "here").to_svg().unwrap_err();
+        assert!(matches!(error, ExportError::Marker { .. }), "{place:?}");
+    }
     let huge = Field::new("u", "", 1, vec![1.7e308, -1.7e308, 0.0, 0.0, 0.0, 0.0]);
     let error = Picture::of(&mesh).field(&huge).to_svg().unwrap_err();
     assert!(matches!(error, ExportError::Extent { ref what, .. } if what == "u"));

@@ -1,5 +1,8 @@
 //! Round values along an axis, a color bar or a family of contour lines.
 
+/// A shorter range counts as a single value: its steps would be no ordinary numbers.
+pub(crate) const SHORTEST: f64 = 1e-290;
+
 /// Round values in a range, with their labels.
 #[derive(Debug, Clone, PartialEq)]
 pub(crate) struct Ticks {
@@ -12,13 +15,13 @@ pub(crate) struct Ticks {
 }
 
 impl Ticks {
-    /// At most `count` round steps in a range of finite length.
+    /// At most `count` round steps (and never more than 400) in a range of finite length.
     pub(crate) fn new(low: f64, high: f64, count: usize) -> Self {
         let span = high - low;
-        if span.is_nan() || span <= 0.0 {
+        if !(span > SHORTEST && span.is_finite()) {
             return Self::labelled(vec![low], f64::max(low.abs(), f64::MIN_POSITIVE) * 1e-3);
         }
-        let step = round_step(span / count.max(1) as f64);
+        let step = round_step(span / count.clamp(1, 400) as f64);
         // A hair of tolerance lets an end that is round up to rounding errors be a tick.
         let first = (low / step - 1e-6).ceil();
         let last = (high / step + 1e-6).floor();
@@ -129,6 +132,15 @@ mod tests {
         assert_eq!((ticks.power, ticks.labels[1].as_str()), (-7, "1"));
         assert_eq!(ticks.title("w", "m"), "w, 10⁻⁷\u{A0}m");
         assert_eq!(Ticks::new(0.0, 2.0e8, 4).unit(""), "10⁸");
+    }
+
+    #[test]
+    fn ranges_at_the_limits_of_numbers_have_few_ticks() {
+        for (low, high) in [(0.0, 5e-324), (0.0, 1e-300), (-1.7e308, 1.7e308), (f64::NAN, 1.0), (0.0, f64::INFINITY)] {
+            assert_eq!(Ticks::new(low, high, 8).values.len(), 1);
+        }
+        let many = Ticks::new(0.0, 1.0, usize::MAX).values;
+        assert!(many.len() <= 401 && many.last() == Some(&1.0), "the ticks reach the end of the range");
     }
 
     #[test]

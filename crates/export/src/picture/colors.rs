@@ -2,6 +2,8 @@
 
 use colorous::{Gradient, RED_BLUE, VIRIDIS};
 
+use super::axes::SHORTEST;
+
 /// Which colors a field gets.
 #[derive(Debug, Clone, Copy, PartialEq, Eq, Default)]
 pub enum Colors {
@@ -26,7 +28,7 @@ impl Scale {
         let largest = low.abs().max(high.abs());
         let (low, high) = match colors {
             Colors::Diverging if largest > 1e-290 => (-largest, largest),
-            Colors::Sequential if high - low > (1e-12 * largest).max(1e-290) => (low, high),
+            Colors::Sequential if high - low > (1e-12 * largest).max(SHORTEST) => (low, high),
             _ if largest > 1e-280 => (low - 0.1 * largest, high + 0.1 * largest),
             _ => (-1.0, 1.0),
         };

@@ -1,6 +1,6 @@
 //! Contour lines at round values.
 
-use super::axes::Ticks;
+use super::axes::{SHORTEST, Ticks};
 use super::colors::Scale;
 use super::lines::joined;
 use super::pieces::Piece;
@@ -8,7 +8,7 @@ use super::svg::{Pixel, Svg};
 
 /// About `count` round levels strictly inside a range.
 pub(crate) fn levels(low: f64, high: f64, count: usize) -> Vec<f64> {
-    if count == 0 || high - low <= 1e-12 * low.abs().max(high.abs()) {
+    if count == 0 || high - low <= (1e-12 * low.abs().max(high.abs())).max(SHORTEST) {
         return Vec::new();
     }
     let edge = 1e-6 * (high - low);
@@ -85,6 +85,8 @@ mod tests {
         }
         assert!(levels(20.0, 20.0, 10).is_empty());
         assert!(levels(0.0, 1.0, 0).is_empty());
+        assert!(levels(0.0, 5e-324, 10).is_empty());
+        assert!(levels(0.0, 1.0, usize::MAX).last() > Some(&0.9));
     }
 
     #[test]

@@ -1,6 +1,6 @@
 //! Where everything stands in a picture: frame, axes, color bar, captions.
 
-use super::axes::Ticks;
+use super::axes::{SHORTEST, Ticks};
 use super::frame::{self, Axis, label_room};
 use super::svg::{Anchor, Pixel, Svg, text_width, wrap};
 use crate::ExportError;
@@ -54,7 +54,7 @@ impl Layout {
     pub(crate) fn new(low: [f64; 2], high: [f64; 2], wishes: Wishes<'_>) -> Result<Self, ExportError> {
         let size = [high[0] - low[0], high[1] - low[1]];
         let scale = (GREATEST[0] / size[0]).min(GREATEST[1] / size[1]);
-        if !(scale.is_finite() && scale > 0.0 && size.iter().all(|s| *s > 0.0)) {
+        if !(scale.is_finite() && scale > 0.0 && size.iter().all(|s| *s > SHORTEST)) {
             return Err(ExportError::Extent { what: "the mesh".into(), low: low.to_vec(), high: high.to_vec() });
         }
         let [w, h] = size.map(|s| s * scale + 2.0 * FREE);
@@ -177,5 +177,6 @@ mod tests {
         let error = Layout::new([0.0, 0.0], [0.0, 1.0], Wishes::default()).unwrap_err();
         assert_eq!(error, ExportError::Extent { what: "the mesh".into(), low: vec![0.0, 0.0], high: vec![0.0, 1.0] });
         assert!(Layout::new([-1e308, 0.0], [1e308, 1.0], Wishes::default()).is_err());
+        assert!(Layout::new([0.0, 0.0], [1e-304, 1e-310], Wishes::default()).is_err());
     }
 }

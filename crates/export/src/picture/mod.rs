@@ -156,7 +156,7 @@ impl<'a> Picture<'a> {
             arrows::draw(&mut svg, &layout, self.mesh, vectors, unit);
         }
         layout.draw(&mut svg, &self.length_unit);
-        let marks: Vec<Mark<'_>> = self.markers.iter().map(|(x, text)| Mark { at: to_pixel(*x), text }).collect();
+        let marks = self.marks(&layout)?;
         let notes = markers::draw(&mut svg, layout.frame, &marks, &[]);
         let height = svg.notes(&notes, layout.frame[0].min(24.0), layout.below, layout.width());
         Ok(svg.finish(layout.width(), height))
@@ -169,10 +169,21 @@ impl<'a> Picture<'a> {
         if let Some((vectors, _)) = &self.arrows {
             check_cells(self.mesh, "arrows", vectors.len(), |c| vectors[c].iter().all(|v| v.is_finite()))?;
         }
-        match self.markers.iter().find(|(x, _)| !x.iter().all(|c| c.is_finite())) {
-            Some((place, text)) => Err(ExportError::Marker { text: text.clone(), place: place.to_vec() }),
-            None => Ok(()),
+        Ok(())
+    }
+
+    /// Markers on the page; one outside of the frame would not be seen.
+    fn marks(&self, layout: &Layout) -> Result<Vec<Mark<'_>>, ExportError> {
+        let [left, top, right, bottom] = layout.frame;
+        let mut marks = Vec::new();
+        for (place, text) in &self.markers {
+            let at = layout.to_pixel(*place);
+            if !((left..=right).contains(&at[0]) && (top..=bottom).contains(&at[1])) {
+                return Err(ExportError::Marker { text: text.clone(), place: place.to_vec() });
+            }
+            marks.push(Mark { at, text });
         }
+        Ok(marks)
     }
 
     fn draw_field(&self, svg: &mut Svg, layout: &Layout, field: &Field) -> Result<(), ExportError> {

@@ -72,3 +72,8 @@ pub use refine::{Answer, Ending, Goal, Tolerance};
 pub use results::{Balance, Extreme, Extremes, RegionResult};
 pub use solution::Solution;
 pub use watch::{Round, Signal, Unwatched, Watch};
+
+/// The program on the front page of the project runs.
+#[cfg(doctest)]
+#[doc = include_str!(concat!(env!("CARGO_MANIFEST_DIR"), "/../../README.md"))]
+pub struct Readme;

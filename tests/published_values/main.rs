@@ -9,4 +9,5 @@ mod heat;
 mod one_dimension;
 mod potential;
 mod singular;
+mod smooth;
 mod torsion;

@@ -3,7 +3,7 @@
 use std::error::Error;
 
 use hypercircle::mesh::{Mesh, Outline, Rectangle, between, rectangle, rest_of_boundary};
-use hypercircle::{Answer, Diffusion, Enclosure, Guarantee, Tolerance};
+use hypercircle::{Answer, Diffusion, Enclosure, Guarantee, Place, Tolerance};
 
 type Outcome = Result<(), Box<dyn Error>>;
 
@@ -119,6 +119,34 @@ fn dam_with_flat_base() -> Outcome {
             }
         }
     }
+    Ok(())
+}
+
+/// Regional groundwater flow under a water table that rises linearly, z₀ + c x, from a valley to a divide.
+///
+/// Source: J. Tóth, J. Geophys. Res. 67 (1962) 4375; his Fourier series.
+#[test]
+fn regional_flow() -> Outcome {
+    let basin = Rectangle::new([0.0, 0.0], [2.0, 1.0], [8, 4]).mesh()?;
+    let answer = Diffusion::on(basin)
+        .conductivity_everywhere(1.0)
+        .dirichlet("top", |at: &Place<2>| 1.0 + 0.05 * at.x[0])
+        .order(3)
+        .solve_within(Tolerance::Relative(1e-4))?;
+    assert!(answer.is_met(), "{:?}", answer.ending());
+    let heads =
+        [([0.0, 0.0], 1.033_765_724_165_7), ([0.5, 0.5], 1.035_195_738_769_1), ([0.0, 0.75], 1.019_591_958_317_8)];
+    println!("regional_flow: {} unknowns, {} rounds", answer.unknown_count(), answer.rounds().len());
+    for (at, head) in heads {
+        let difference = answer.value(&at)? - head;
+        println!("regional_flow: at {at:?} {difference:e}");
+        assert!(difference.abs() < 1e-7);
+    }
+    // What flows in on one half flows out on the other.
+    println!("regional_flow: net {:e}, potential {:e}", answer.inflow("top")?, answer.potential()?.relative_width());
+    assert!(answer.inflow("top")?.abs() < 1e-10);
+    // The table is in the trial space, so that there is an interval for the potential.
+    assert!(answer.potential()?.relative_width() < 1e-7);
     Ok(())
 }
 

@@ -79,6 +79,11 @@ impl<const D: usize> Diffusion<D> {
         }
     }
 
+    /// The same statement on another mesh, for instance a refined one, that has the names it uses.
+    pub fn moved_to(self, mesh: impl Into<Arc<Mesh<D>>>) -> Self {
+        Self { mesh: mesh.into(), ..self }
+    }
+
     /// Polynomial degree of the elements.
     pub fn order(mut self, order: usize) -> Self {
         self.order = order;

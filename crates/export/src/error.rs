@@ -35,14 +35,16 @@ pub enum ExportError {
         place: Vec<f64>,
     },
     /// An element order that cannot be shown.
-    #[error("field {name} has order {order}, but only {allowed:?} can be shown; interpolate it to one of these first")]
+    #[error(
+        "field {name} has order {order}, but orders from 1 to {highest} can be shown; interpolate it to one of these"
+    )]
     Order {
         /// The field.
         name: String,
         /// The order it has.
         order: usize,
-        /// The orders that can be shown.
-        allowed: &'static [usize],
+        /// The highest order that can be shown.
+        highest: usize,
     },
     /// Coordinates or values so large, or so close together, that they cannot be scaled to a picture.
     #[error("{what} spans {low:?} to {high:?}, which cannot be drawn to scale; choose another unit")]

@@ -3,15 +3,15 @@
 use hypercircle_mesh::{CellId, Mesh};
 
 use crate::ExportError;
-
-/// Orders of elements that can be shown.
-const ORDERS: &[usize] = &[1, 2];
+use crate::nodes::{Nodes, first_coordinates, place};
 
 /// Values of a scalar field at the nodes of each cell, cell after cell.
 ///
 /// Order 1 has the vertices of the cell. Order 2 adds the middle of each side: on a triangle (v₀, v₁, v₂) the values
-/// are at v₀, v₁, v₂ and the middles of v₀v₁, v₁v₂, v₂v₀; on an interval at both ends, then in the middle. Each cell
-/// has its own values, so that a field may jump between cells.
+/// are at v₀, v₁, v₂ and the middles of v₀v₁, v₁v₂, v₂v₀; on an interval at both ends, then in the middle. Orders up
+/// to 12 have the nodes of [`hypercircle_element::Lagrange`]. Each cell has its own values, so that a field may jump
+/// between cells. A field that is known otherwise is interpolated: [`Field::of_function`] from a function of the
+/// coordinates, [`Field::sampled`] from one of the cell and the point in it.
 ///
 /// ```
 /// use hypercircle_export::Field;
@@ -68,11 +68,33 @@ impl Field {
         order: usize,
         value: impl Fn(&[f64; D]) -> f64,
     ) -> Self {
-        let mut values = Vec::new();
-        for cell in mesh.cells() {
-            values.extend(node_places(mesh, cell, order).iter().map(&value));
-        }
-        Self::new(name, unit, order, values)
+        Self::sampled(mesh, name, unit, order, |cell, reference| value(&mesh.place(cell, reference)))
+    }
+
+    /// A field of a given order that interpolates a function of the cell and the reference point in it.
+    ///
+    /// An order that is none gives a field without values, which is told when it is shown.
+    ///
+    /// ```
+    /// use hypercircle_export::Field;
+    /// use hypercircle_mesh::Interval;
+    /// let rod = Interval::uniform(0.0, 1.0, 4).mesh()?;
+    /// // The number of the cell, and a slope inside: a field that jumps between cells.
+    /// let saw = Field::sampled(&rod, "saw", "", 1, |cell, reference| cell.0 as f64 - reference[0]);
+    /// assert_eq!(saw.values()[2..4], [1.0, 0.0]);
+    /// # Ok::<(), Box<dyn std::error::Error>>(())
+    /// ```
+    pub fn sampled<const D: usize>(
+        mesh: &Mesh<D>,
+        name: &str,
+        unit: &str,
+        order: usize,
+        value: impl Fn(CellId, &[f64; D]) -> f64,
+    ) -> Self {
+        let nodes = Nodes::new(D, order);
+        let points: Vec<[f64; D]> = nodes.iter().flat_map(Nodes::reference).map(first_coordinates).collect();
+        let values = mesh.cells().flat_map(|cell| points.iter().map(move |p| (cell, p))).map(|(c, p)| value(c, p));
+        Self::new(name, unit, order, values.collect())
     }
 
     /// The name of the quantity.
@@ -115,45 +137,23 @@ impl Field {
         }
     }
 
-    /// Checks order, length and values against a mesh; gives the number of values in a cell.
-    pub(crate) fn check<const D: usize>(&self, mesh: &Mesh<D>) -> Result<usize, ExportError> {
-        if !ORDERS.contains(&self.order) {
-            return Err(ExportError::Order { name: self.name.clone(), order: self.order, allowed: ORDERS });
-        }
-        let each = node_count(D, self.order);
+    /// Checks order, length and values against a mesh; gives the nodes of a cell.
+    pub(crate) fn check<const D: usize>(&self, mesh: &Mesh<D>) -> Result<Nodes, ExportError> {
+        let Some(nodes) = Nodes::new(D, self.order) else {
+            let highest = Nodes::HIGHEST_ORDER;
+            return Err(ExportError::Order { name: self.name.clone(), order: self.order, highest });
+        };
+        let each = nodes.reference().len();
         let expected = each * mesh.cell_count();
         if self.values.len() != expected {
             return Err(ExportError::WrongLength { what: self.name.clone(), given: self.values.len(), expected });
         }
         if let Some(i) = self.values.iter().position(|v| !v.is_finite()) {
-            let place = node_places(mesh, CellId((i / each) as u32), self.order)[i % each];
+            let place = place(mesh, CellId((i / each) as u32), &nodes.reference()[i % each]);
             return Err(ExportError::NotFinite { name: self.name.clone(), cell: i / each, place: place.to_vec() });
         }
-        Ok(each)
+        Ok(nodes)
     }
-}
-
-/// Number of nodes of a cell in `dimension` 1 or 2 and order 1 or 2.
-pub(crate) fn node_count(dimension: usize, order: usize) -> usize {
-    match (dimension, order) {
-        (1, _) => order + 1,
-        (_, 1) => 3,
-        _ => 6,
-    }
-}
-
-/// Coordinates of the nodes of a cell in the order of [`Field`]; vertices only for an order that is none.
-pub(crate) fn node_places<const D: usize>(mesh: &Mesh<D>, cell: CellId, order: usize) -> Vec<[f64; D]> {
-    let mut places: Vec<[f64; D]> = mesh.cell_vertices(cell).iter().map(|&v| mesh.point(v)).collect();
-    if order == 2 {
-        let vertices = places.len();
-        let sides = if D == 1 { 1 } else { 3 };
-        for side in 0..sides {
-            let (a, b) = (places[side], places[(side + 1) % vertices]);
-            places.push(std::array::from_fn(|i| 0.5 * (a[i] + b[i])));
-        }
-    }
-    places
 }
 
 #[cfg(test)]
@@ -165,12 +165,12 @@ mod tests {
     #[test]
     fn nodes_are_in_the_promised_order() {
         let mesh = Rectangle::new([0.0, 0.0], [1.0, 1.0], [1, 1]).mesh().unwrap();
-        let places = node_places(&mesh, CellId(0), 2);
+        let [x, y] = [0, 1].map(|i| Field::of_function(&mesh, "", "", 2, |x| x[i]).values);
         for (middle, (a, b)) in [(3, (0, 1)), (4, (1, 2)), (5, (2, 0))] {
-            assert_eq!(places[middle], [0, 1].map(|i| 0.5 * (places[a][i] + places[b][i])));
+            assert_eq!([x[middle], y[middle]], [0.5 * (x[a] + x[b]), 0.5 * (y[a] + y[b])]);
         }
         let line = Interval::uniform(0.0, 4.0, 2).mesh().unwrap();
-        assert_eq!(node_places(&line, CellId(1), 2), [[2.0], [4.0], [3.0]]);
+        assert_eq!(Field::of_function(&line, "", "", 2, |x| x[0]).values[3..], [2.0, 4.0, 3.0]);
     }
 
     #[test]
@@ -184,8 +184,10 @@ mod tests {
     #[test]
     fn wrong_orders_and_lengths_are_told() {
         let line = Interval::uniform(0.0, 4.0, 2).mesh().unwrap();
-        let error = Field::new("u", "", 3, vec![0.0; 8]).check(&line).unwrap_err();
-        assert!(matches!(error, ExportError::Order { order: 3, allowed: &[1, 2], .. }));
+        for order in [0, 13] {
+            let error = Field::of_function(&line, "u", "", order, |x| x[0]).check(&line).unwrap_err();
+            assert_eq!(error, ExportError::Order { name: "u".into(), order, highest: 12 });
+        }
         let error = Field::new("u", "", 1, vec![0.0; 3]).check(&line).unwrap_err();
         assert!(matches!(error, ExportError::WrongLength { given: 3, expected: 4, .. }));
         assert!(Field::at_vertices(&line, "u", "", &[1.0]).is_err());

@@ -21,7 +21,7 @@
 //! # Ok::<(), Box<dyn std::error::Error>>(())
 //! ```
 //!
-//! - [`Field`]: values at the nodes of each cell, of order 1 or 2, with name and unit;
+//! - [`Field`]: values at the nodes of each cell, of any order up to 12, with name and unit;
 //! - [`Picture`] of a triangle mesh and [`CurvePicture`] of an interval, as SVG without any need of installed fonts;
 //! - [`VtuFile`]: fields, cell values and vectors in an open format that general-purpose viewers read;
 //! - [`Table`], [`format_interval`], [`significant`]: numbers as plain text;
@@ -30,6 +30,7 @@
 
 mod error;
 mod field;
+mod nodes;
 mod picture;
 mod table;
 mod vtu;

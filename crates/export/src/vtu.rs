@@ -7,14 +7,14 @@ use base64::Engine as _;
 use base64::engine::general_purpose::STANDARD;
 use hypercircle_mesh::Mesh;
 
-use crate::field::{node_count, node_places};
+use crate::nodes::place;
 use crate::picture::escape;
 use crate::{ExportError, Field};
 
 /// A field file of a mesh: fields at nodes, numbers and vectors of cells.
 ///
-/// Every cell has nodes of its own, so that a field that jumps between cells is kept as it is; the highest order
-/// among the fields decides between straight cells (order 1) and quadratic ones (order 2). The number of each
+/// Every cell has nodes of its own, so that a field that jumps between cells is kept as it is. The highest order among
+/// the fields is the order of the cells: straight, quadratic, or Lagrange cells of any higher order. The number of each
 /// cell's region is always written, as `region`. Arrays are little-endian binary in base64 with lengths of 64 bits.
 ///
 /// ```
@@ -71,16 +71,16 @@ impl<'a, const D: usize> VtuFile<'a, D> {
     pub fn to_xml(&self) -> Result<String, ExportError> {
         self.check()?;
         let order = self.fields.iter().map(|f| f.order()).max().unwrap_or(1);
-        let each = node_count(D, order);
+        let points = cell_points(D, order);
         let cells = self.mesh.cell_count();
         let mut xml = format!(
             "<?xml version=\"1.0\"?>\n<VTKFile type=\"UnstructuredGrid\" version=\"1.0\" byte_order=\"LittleEndian\" \
              header_type=\"UInt64\">\n<UnstructuredGrid>\n<Piece NumberOfPoints=\"{}\" NumberOfCells=\"{cells}\">\n",
-            each * cells
+            points.len() * cells
         );
-        self.point_data(&mut xml, order);
+        self.point_data(&mut xml, &points)?;
         self.cell_data(&mut xml);
-        self.geometry(&mut xml, order);
+        self.geometry(&mut xml, order, &points);
         xml.push_str("</Piece>\n</UnstructuredGrid>\n</VTKFile>\n");
         Ok(xml)
     }
@@ -94,9 +94,6 @@ impl<'a, const D: usize> VtuFile<'a, D> {
     }
 
     fn check(&self) -> Result<(), ExportError> {
-        for field in &self.fields {
-            field.check(self.mesh)?;
-        }
         for (name, values) in &self.scalars {
             check_cells(self.mesh, name, values.len(), |c| values[c].is_finite())?;
         }
@@ -106,13 +103,16 @@ impl<'a, const D: usize> VtuFile<'a, D> {
         Ok(())
     }
 
-    fn point_data(&self, xml: &mut String, order: usize) {
+    fn point_data(&self, xml: &mut String, points: &[[f64; 2]]) -> Result<(), ExportError> {
         xml.push_str("<PointData>\n");
         for field in &self.fields {
-            let values = if field.order() == order { field.values().to_vec() } else { raise(field.values(), D) };
-            array(xml, "Float64", &field.label(), 1, values.iter().map(|v| v.to_le_bytes()));
+            let nodes = field.check(self.mesh)?;
+            let sampler = nodes.sampler(points);
+            let cells = field.values().chunks_exact(nodes.reference().len());
+            array(xml, "Float64", &field.label(), 1, cells.flat_map(|c| sampler.values(c)).map(f64::to_le_bytes));
         }
         xml.push_str("</PointData>\n");
+        Ok(())
     }
 
     fn cell_data(&self, xml: &mut String) {
@@ -127,19 +127,20 @@ impl<'a, const D: usize> VtuFile<'a, D> {
         xml.push_str("</CellData>\n");
     }
 
-    fn geometry(&self, xml: &mut String, order: usize) {
-        let each = node_count(D, order);
-        let cells = self.mesh.cell_count();
-        let places = self.mesh.cells().flat_map(|c| node_places(self.mesh, c, order));
+    fn geometry(&self, xml: &mut String, order: usize, points: &[[f64; 2]]) {
+        let (each, cells) = (points.len(), self.mesh.cell_count());
+        let places = self.mesh.cells().flat_map(|c| points.iter().map(move |p| place(self.mesh, c, p)));
         xml.push_str("<Points>\n");
         array(xml, "Float64", "Points", 3, places.flat_map(|p| padded(&p)).map(f64::to_le_bytes));
         xml.push_str("</Points>\n<Cells>\n");
-        // Numbers of the format: line 3, triangle 5, line of three nodes 21, triangle of six nodes 22.
+        // Numbers of the format: line 3, triangle 5; with middles 21 and 22; of any order 68 and 69.
         let kind: u8 = match (D, order) {
             (1, 1) => 3,
-            (1, _) => 21,
+            (1, 2) => 21,
+            (1, _) => 68,
             (_, 1) => 5,
-            _ => 22,
+            (_, 2) => 22,
+            _ => 69,
         };
         array(xml, "Int64", "connectivity", 1, (0..(each * cells) as i64).map(i64::to_le_bytes));
         array(xml, "Int64", "offsets", 1, (1..=cells as i64).map(|c| (c * each as i64).to_le_bytes()));
@@ -168,16 +169,31 @@ pub(crate) fn check_cells<const D: usize>(
     }
 }
 
-/// Values of order 1 at the nodes of order 2.
-fn raise(values: &[f64], dimension: usize) -> Vec<f64> {
-    let vertices = dimension + 1;
-    let sides = if dimension == 1 { 1 } else { 3 };
-    let mut raised = Vec::with_capacity(values.len() * 2);
-    for cell in values.chunks_exact(vertices) {
-        raised.extend_from_slice(cell);
-        raised.extend((0..sides).map(|s| 0.5 * (cell[s] + cell[(s + 1) % vertices])));
+/// Reference coordinates of the equidistant points of a cell in the order of the format: vertices, then the inner points
+/// of each side, then those inside.
+fn cell_points(dimension: usize, order: usize) -> Vec<[f64; 2]> {
+    let share = |n: usize| n as f64 / order as f64;
+    if dimension == 1 {
+        return [0, order].into_iter().chain(1..order).map(|i| [share(i), 0.0]).collect();
     }
-    raised
+    // The points inside form a triangle that is smaller by three steps, ordered likewise.
+    let (mut steps, mut size) = (Vec::new(), order);
+    for inset in 0..=order / 3 {
+        let corners = [[inset, inset], [inset + size, inset], [inset, inset + size]];
+        if size == 0 {
+            steps.push(corners[0]);
+            break;
+        }
+        steps.extend(corners);
+        steps.extend((1..size).map(|k| [inset + k, inset]));
+        steps.extend((1..size).map(|k| [inset + size - k, inset + k]));
+        steps.extend((1..size).map(|k| [inset, inset + size - k]));
+        if size < 3 {
+            break;
+        }
+        size -= 3;
+    }
+    steps.into_iter().map(|[i, j]| [share(i), share(j)]).collect()
 }
 
 /// Three components of a vector of one or two.
@@ -257,7 +273,8 @@ mod tests {
         assert_eq!(floats(&get("a < b, K").2), quadratic.values());
         let points = floats(&get("Points").2);
         let x: Vec<f64> = points.chunks_exact(3).map(|p| p[0]).collect();
-        assert_eq!(floats(&get("x").2), x, "a linear field is raised to the middles of the sides");
+        let raised = floats(&get("x").2);
+        assert!(raised.iter().zip(&x).all(|(a, b)| (a - b).abs() < 1e-15), "a linear field has values in the middles");
         for (p, value) in points.chunks_exact(3).zip(quadratic.values()) {
             assert_eq!(p[0] * p[0] + p[1] + p[2], *value);
         }
@@ -276,8 +293,40 @@ mod tests {
         let kind = |xml: String| arrays(&xml).into_iter().find(|a| a.0 == "types").unwrap().2;
         assert_eq!(kind(VtuFile::of(&line).to_xml().unwrap()), [3, 3]);
         assert_eq!(kind(VtuFile::of(&square).to_xml().unwrap()), [5, 5]);
-        let bent = Field::of_function(&line, "u", "", 2, |x| x[0]);
-        assert_eq!(kind(VtuFile::of(&line).field(&bent).to_xml().unwrap()), [21, 21]);
+        for (order, wanted) in [(2, [21, 22]), (5, [68, 69])] {
+            let bent = Field::of_function(&line, "u", "", order, |x| x[0]);
+            assert_eq!(kind(VtuFile::of(&line).field(&bent).to_xml().unwrap()), [wanted[0]; 2]);
+            let bent = Field::of_function(&square, "u", "", order, |x| x[0]);
+            assert_eq!(kind(VtuFile::of(&square).field(&bent).to_xml().unwrap()), [wanted[1]; 2]);
+        }
+    }
+
+    #[test]
+    fn fields_of_high_order_are_written_at_equidistant_points() {
+        let mesh = Rectangle::new([0.0, 0.0], [2.0, 1.0], [2, 1]).mesh().unwrap();
+        let f = |x: &[f64; 2]| (x[0] - 0.7 * x[1]).powi(5);
+        let field = Field::of_function(&mesh, "u", "", 5, f);
+        let read = arrays(&VtuFile::of(&mesh).field(&field).to_xml().unwrap());
+        let get = |name: &str| floats(&read.iter().find(|a| a.0 == name).unwrap().2);
+        let (points, values) = (get("Points"), get("u"));
+        assert_eq!(values.len(), 4 * 21);
+        for (p, u) in points.chunks_exact(3).zip(values) {
+            assert!((f(&[p[0], p[1]]) - u).abs() < 1e-12);
+            assert!((p[0] * 5.0 - (p[0] * 5.0).round()).abs() < 1e-12, "five steps along each side");
+        }
+    }
+
+    #[test]
+    fn points_of_a_triangle_go_around_it_and_inwards() {
+        let steps = |order: usize| -> Vec<[usize; 2]> {
+            cell_points(2, order).iter().map(|p| p.map(|c| (c * order as f64).round() as usize)).collect()
+        };
+        assert_eq!(steps(2), [[0, 0], [2, 0], [0, 2], [1, 0], [1, 1], [0, 1]]);
+        assert_eq!(steps(3)[3..], [[1, 0], [2, 0], [2, 1], [1, 2], [0, 2], [0, 1], [1, 1]]);
+        assert_eq!(steps(4)[12..], [[1, 1], [2, 1], [1, 2]]);
+        assert!((1..=12).all(|n| steps(n).len() == (n + 1) * (n + 2) / 2));
+        let line: Vec<f64> = cell_points(1, 4).iter().map(|p| p[0]).collect();
+        assert_eq!(line, [0.0, 1.0, 0.25, 0.5, 0.75]);
     }
 
     #[test]

@@ -62,7 +62,7 @@ mod tests {
         let mesh = Rectangle::new([0.0, 0.0], [3.0, 1.0], [5, 4]).mesh().unwrap();
         for order in [1, 2] {
             let field = Field::of_function(&mesh, "", "", order, |x| 2.0 * x[0] + x[1]);
-            let all: Vec<Piece> = pieces(&mesh, &field, |x| x).collect();
+            let all = pieces(&mesh, &field, &field.check(&mesh).unwrap(), |x| x);
             for level in levels(0.0, 7.0, 6) {
                 let lines = segments(all.iter(), level);
                 for p in lines.iter().flatten() {

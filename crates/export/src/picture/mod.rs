@@ -25,7 +25,6 @@ use hypercircle_mesh::Mesh;
 use self::colors::Scale;
 use self::layout::{Layout, Wishes};
 use self::markers::Mark;
-use self::pieces::Piece;
 use self::svg::Svg;
 use crate::vtu::check_cells;
 use crate::{ExportError, Field};
@@ -163,9 +162,6 @@ impl<'a> Picture<'a> {
     }
 
     fn check(&self) -> Result<(), ExportError> {
-        if let Some(field) = self.field {
-            field.check(self.mesh)?;
-        }
         if let Some((vectors, _)) = &self.arrows {
             check_cells(self.mesh, "arrows", vectors.len(), |c| vectors[c].iter().all(|v| v.is_finite()))?;
         }
@@ -192,7 +188,7 @@ impl<'a> Picture<'a> {
             return Err(ExportError::Extent { what: field.name().into(), low: vec![low], high: vec![high] });
         }
         let scale = Scale::new(low, high, self.colors);
-        let pieces: Vec<Piece> = pieces::pieces(self.mesh, field, |x| layout.to_pixel(x)).collect();
+        let pieces = pieces::pieces(self.mesh, field, &field.check(self.mesh)?, |x| layout.to_pixel(x));
         if !shade::bands(svg, pieces.iter().copied(), &scale) {
             let (corner, size) = layout.domain();
             raster::draw(svg, &pieces, &scale, corner, size)?;

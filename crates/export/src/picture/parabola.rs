@@ -9,11 +9,9 @@ pub(crate) struct Parabola {
 }
 
 impl Parabola {
-    /// From both ends of a cell and its values: two, or three with the middle.
-    pub(crate) fn new(x: [f64; 2], values: &[f64]) -> Self {
-        let at = |i: usize| values.get(i).copied().unwrap_or(0.0);
-        let middle = values.get(2).copied().unwrap_or(0.5 * at(0) + 0.5 * at(1));
-        Self { x, u: [at(0), at(1), middle] }
+    /// From both ends and the values at both ends and in the middle.
+    pub(crate) fn new(x: [f64; 2], u: [f64; 3]) -> Self {
+        Self { x, u }
     }
 
     /// The left end.
@@ -58,7 +56,7 @@ mod tests {
     #[test]
     fn the_top_lies_where_the_slope_is_zero() {
         let f = |x: f64| 3.0 - (x - 1.2) * (x - 1.2);
-        let curve = Parabola::new([1.0, 2.0], &[f(1.0), f(2.0), f(1.5)]);
+        let curve = Parabola::new([1.0, 2.0], [f(1.0), f(2.0), f(1.5)]);
         let all: Vec<[f64; 2]> = curve.candidates().collect();
         assert_eq!(all.len(), 3);
         assert!((all[1][0] - 1.2).abs() < 1e-13 && (all[1][1] - 3.0).abs() < 1e-13);
@@ -67,7 +65,7 @@ mod tests {
     #[test]
     fn the_tangents_of_both_ends_meet_in_the_control_point() {
         let (f, slope) = (|x: f64| x * x - x, |x: f64| 2.0 * x - 1.0);
-        let curve = Parabola::new([0.0, 4.0], &[f(0.0), f(4.0), f(2.0)]);
+        let curve = Parabola::new([0.0, 4.0], [f(0.0), f(4.0), f(2.0)]);
         let [x, u] = curve.control();
         assert_eq!(u, f(0.0) + slope(0.0) * x);
         assert_eq!(u, f(4.0) + slope(4.0) * (x - 4.0));
@@ -75,13 +73,12 @@ mod tests {
 
     #[test]
     fn points_of_the_curve_interpolate() {
-        let curve = Parabola::new([0.0, 4.0], &[0.0, 16.0, 4.0]);
+        let curve = Parabola::new([0.0, 4.0], [0.0, 16.0, 4.0]);
         assert_eq!(curve.at(0.75), [3.0, 9.0]);
     }
 
     #[test]
     fn a_straight_curve_has_no_top() {
-        assert_eq!(Parabola::new([0.0, 1.0], &[0.1, 0.3]).candidates().count(), 2);
-        assert_eq!(Parabola::new([0.0, 1.0], &[0.1, 0.3, 0.2]).candidates().count(), 2);
+        assert_eq!(Parabola::new([0.0, 1.0], [0.1, 0.3, 0.2]).candidates().count(), 2);
     }
 }

@@ -4,18 +4,19 @@ use hypercircle_mesh::{CellId, Mesh};
 
 use super::svg::Pixel;
 use crate::Field;
+use crate::nodes::{Nodes, Sampler};
 
-/// Straight pieces along each side of a cell of order 2; fewer where the eye cannot tell them apart.
-fn cuts(corners: &[Pixel; 3]) -> usize {
+/// Pieces need not be smaller than this many pixels: the eye cannot tell them apart.
+const FINEST: f64 = 1.5;
+
+/// Straight pieces along each side of a cell of some order.
+fn cuts(corners: &[Pixel; 3], order: usize) -> usize {
     let extent = |d: usize| {
         let c = corners.map(|p| p[d]);
         c[0].max(c[1]).max(c[2]) - c[0].min(c[1]).min(c[2])
     };
-    match extent(0).max(extent(1)) {
-        size if size > 6.0 => 4,
-        size if size > 2.0 => 2,
-        _ => 1,
-    }
+    let most = if order == 1 { 1 } else { 2 * order };
+    (extent(0).max(extent(1)) / FINEST).ceil().clamp(1.0, most as f64) as usize
 }
 
 /// A triangle of the picture with the values at its corners.
@@ -25,27 +26,43 @@ pub(crate) struct Piece {
     pub(crate) values: [f64; 3],
 }
 
-/// All pieces of a checked field: one for a cell of order 1, sixteen for a cell of order 2 that is not tiny.
-pub(crate) fn pieces<'a>(
-    mesh: &'a Mesh<2>,
-    field: &'a Field,
-    to_pixel: impl Fn([f64; 2]) -> Pixel + 'a,
-) -> impl Iterator<Item = Piece> + 'a {
-    let each = field.values().len() / mesh.cell_count().max(1);
-    mesh.cells().flat_map(move |cell| {
+/// All pieces of a field that was checked: one for a cell of order 1, up to 4k² for a cell of order k.
+pub(crate) fn pieces(mesh: &Mesh<2>, field: &Field, nodes: &Nodes, to_pixel: impl Fn([f64; 2]) -> Pixel) -> Vec<Piece> {
+    let lattices: Vec<Lattice> = (1..=2 * field.order()).map(|cuts| Lattice::new(nodes, cuts)).collect();
+    let mut all = Vec::new();
+    for (cell, values) in mesh.cells().zip(field.values().chunks_exact(nodes.reference().len())) {
         let corners = corners(mesh, cell).map(&to_pixel);
-        let cuts = if field.order() == 1 { 1 } else { cuts(&corners) };
-        let values = &field.values()[cell.index() * each..(cell.index() + 1) * each];
-        let at = move |i: usize, j: usize| {
-            let share = [cuts - i - j, i, j].map(|n| n as f64 / cuts as f64);
-            let place = [0, 1].map(|c| (0..3).map(|k| share[k] * corners[k][c]).sum::<f64>());
-            (place, value_at(values, share))
-        };
-        (0..cuts * cuts).map(move |n| {
-            let [a, b, c] = sub_triangle(n, cuts).map(|[i, j]| at(i, j));
-            Piece { corners: [a.0, b.0, c.0], values: [a.1, b.1, c.1] }
-        })
-    })
+        lattices[cuts(&corners, field.order()) - 1].cut(&corners, values, &mut all);
+    }
+    all
+}
+
+/// The reference triangle cut into equal pieces.
+struct Lattice {
+    points: Vec<[f64; 2]>,
+    sampler: Sampler,
+    /// Numbers of the corners of each piece.
+    pieces: Vec<[usize; 3]>,
+}
+
+impl Lattice {
+    /// The lattice with some pieces along each side.
+    fn new(nodes: &Nodes, cuts: usize) -> Self {
+        let row = |j: usize| (0..=cuts - j).map(move |i| [i, j].map(|n| n as f64 / cuts as f64));
+        let points: Vec<[f64; 2]> = (0..=cuts).flat_map(row).collect();
+        let number = |[i, j]: [usize; 2]| (0..j).map(|r| cuts + 1 - r).sum::<usize>() + i;
+        let pieces = (0..cuts * cuts).map(|n| sub_triangle(n, cuts).map(number)).collect();
+        Self { sampler: nodes.sampler(&points), points, pieces }
+    }
+
+    /// Appends the pieces of a cell with these corners and nodal values.
+    fn cut(&self, corners: &[Pixel; 3], values: &[f64], all: &mut Vec<Piece>) {
+        let [a, b, c] = corners;
+        let at = |[s, t]: &[f64; 2]| [0, 1].map(|d| (1.0 - s - t) * a[d] + s * b[d] + t * c[d]);
+        let places: Vec<Pixel> = self.points.iter().map(at).collect();
+        let values: Vec<f64> = self.sampler.values(values).collect();
+        all.extend(self.pieces.iter().map(|p| Piece { corners: p.map(|n| places[n]), values: p.map(|n| values[n]) }));
+    }
 }
 
 /// Corners of a cell in user's coordinates.
@@ -65,32 +82,23 @@ fn sub_triangle(n: usize, cuts: usize) -> [[usize; 2]; 3] {
     if rest % 2 == 0 { [[i, row], [i + 1, row], [i, row + 1]] } else { [[i + 1, row], [i + 1, row + 1], [i, row + 1]] }
 }
 
-/// The Lagrange interpolant of order 1 or 2 at barycentric coordinates.
-fn value_at(values: &[f64], [a, b, c]: [f64; 3]) -> f64 {
-    match *values {
-        [u, v, w] => a * u + b * v + c * w,
-        [u, v, w, uv, vw, wu] => {
-            a * (2.0 * a - 1.0) * u
-                + b * (2.0 * b - 1.0) * v
-                + c * (2.0 * c - 1.0) * w
-                + 4.0 * (a * b * uv + b * c * vw + c * a * wu)
-        }
-        _ => f64::NAN,
-    }
-}
-
 #[cfg(test)]
 mod tests {
     use hypercircle_mesh::Rectangle;
 
     use super::*;
 
+    /// The pieces with ten pixels for each unit of length.
+    fn tenfold(mesh: &Mesh<2>, field: &Field) -> Vec<Piece> {
+        pieces(mesh, field, &field.check(mesh).unwrap(), |x| x.map(|c| 10.0 * c))
+    }
+
     #[test]
     fn pieces_cover_each_cell_once() {
         let mesh = Rectangle::new([0.0, 0.0], [2.0, 1.0], [2, 1]).mesh().unwrap();
-        for (order, count) in [(1, 4), (2, 64)] {
+        for (order, count) in [(1, 4), (2, 64), (3, 144), (12, 4 * 49)] {
             let field = Field::of_function(&mesh, "", "", order, |x| x[0]);
-            let all: Vec<Piece> = pieces(&mesh, &field, |x| x.map(|c| 10.0 * c)).collect();
+            let all = tenfold(&mesh, &field);
             assert_eq!(all.len(), count);
             let area = |p: &Piece| {
                 let [a, b, c] = p.corners;
@@ -105,10 +113,12 @@ mod tests {
     fn a_parabola_is_met_at_the_corners_of_its_pieces() {
         let mesh = Rectangle::new([0.0, 0.0], [2.0, 1.0], [1, 1]).mesh().unwrap();
         let f = |x: &[f64; 2]| x[0] * x[0] - 3.0 * x[0] * x[1] + x[1];
-        let field = Field::of_function(&mesh, "", "", 2, f);
-        for piece in pieces(&mesh, &field, |x| x.map(|c| 10.0 * c)) {
-            for (x, v) in piece.corners.iter().zip(piece.values) {
-                assert!((f(&x.map(|c| c / 10.0)) - v).abs() < 1e-13);
+        for order in [2, 3, 7] {
+            let field = Field::of_function(&mesh, "", "", order, f);
+            for piece in tenfold(&mesh, &field) {
+                for (x, v) in piece.corners.iter().zip(piece.values) {
+                    assert!((f(&x.map(|c| c / 10.0)) - v).abs() < 1e-12);
+                }
             }
         }
     }

@@ -24,6 +24,8 @@ use crate::{Flux, Guarantee, algebra, lift};
 
 /// Rounding of the sums: the bound is enlarged by this share.
 const ROUNDING: f64 = 1e-10;
+/// Degrees by which data that are only sampled are looked at more closely than they were assembled.
+const CLOSER: usize = 6;
 /// Cells judged by one task.
 const CELLS: usize = 1024;
 
@@ -74,22 +76,22 @@ impl<const D: usize> Certificate<D> {
     /// # Errors
     /// A vector of the wrong length, or coefficients that are not finite or out of range.
     pub fn of(space: &Space<D>, terms: &Terms<D>, system: &System, u: &[f64]) -> Result<Self, AssemblyError> {
-        let density = algebra::density(space, system, u)?;
-        let candidate = Candidate { space, terms, u, density: density.as_deref() };
-        let reference = Reference::new(space, 0)?;
+        if u.len() != space.unknown_count() {
+            let (given, expected) = (u.len(), space.unknown_count());
+            return Err(AssemblyError::WrongLength { what: "vector of unknowns", given, expected });
+        }
+        let mut guarantee = sampled_or_full(space, terms);
+        let reference = Reference::new(space, if guarantee == Guarantee::Full { 0 } else { CLOSER })?;
+        let exactly = Candidate { space, terms, u, density: None };
+        let density = algebra::density(&exactly, &reference, &system.constraints)?;
+        let candidate = Candidate { density: density.as_deref(), ..exactly };
         let mut moments = equilibrate(&candidate, &reference)?;
         let carried = density.as_ref().map(|density| algebra::flux(&candidate, &reference, density));
         if let Some(carried) = &carried {
             moments.iter_mut().zip(&carried.moments).for_each(|(m, c)| *m += c);
         }
-        let mut guarantee = sampled_or_full(space, terms);
-        let judge = Judge {
-            candidate: Candidate { density: None, ..candidate },
-            // Data that are only sampled are looked at more closely than they were assembled.
-            reference: if guarantee == Guarantee::Full { reference } else { Reference::new(space, 2)? },
-            moments: &moments,
-            carried: carried.as_ref(),
-        };
+        let candidate = Candidate { density: None, ..candidate };
+        let judge = Judge { candidate, reference, moments: &moments, carried: carried.as_ref() };
         let mut parts = judge.all()?;
         let lifts = lift::energies(&judge.candidate, |cell| judge.state(cell))?;
         for (cell, energy) in &lifts {

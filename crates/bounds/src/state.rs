@@ -165,6 +165,22 @@ impl<const D: usize> CellState<D> {
         inverse
     }
 
+    /// Adds ∫ ((f − c u) φ − A∇u·∇φ) of every function φ of the primal basis, with the size of its terms.
+    pub(crate) fn add_residual(&self, reference: &Reference, part: &mut [[f64; 2]]) {
+        let inverse = self.inverse_jacobian();
+        for q in 0..self.u.len() {
+            // A∇u·J⁻ᵀ∇̂φ = J⁻¹A∇u·∇̂φ
+            let pulled: [f64; D] = std::array::from_fn(|i| (0..D).map(|k| inverse[i][k] * self.conduction[q][k]).sum());
+            let (values, gradients) = (reference.primal.values_at(q), reference.primal.gradients_at(q));
+            for ((sum, value), gradient) in part.iter_mut().zip(values).zip(gradients) {
+                let made = self.weights[q] * self.supply[q] * value;
+                let conducted = self.weights[q] * (0..D).map(|i| pulled[i] * gradient[i]).sum::<f64>();
+                sum[0] += made - conducted;
+                sum[1] += made.abs() + conducted.abs();
+            }
+        }
+    }
+
     /// Moments ∫ (ψ (f − c u) − ∇ψ·A∇u) v of what the flux of a vertex has to balance, for the hat ψ of local vertex `i`
     /// and all test polynomials v.
     pub(crate) fn vertex_moments(&self, reference: &Reference, i: usize, moments: &mut [f64]) {

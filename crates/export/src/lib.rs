@@ -24,7 +24,7 @@
 //! - [`Field`]: values at the nodes of each cell, of any order up to 12, with name and unit;
 //! - [`Picture`] of a triangle mesh and [`CurvePicture`] of an interval, as SVG without any need of installed fonts;
 //! - [`VtuFile`]: fields, cell values and vectors in an open format that general-purpose viewers read;
-//! - [`Table`], [`format_interval`], [`significant`]: numbers as plain text;
+//! - [`Table`], [`format_interval`], [`significant`]: numbers as plain text, aligned or separated by commas or tabs;
 //! - [`ExportError`]: what can be wrong, where, and how to mend it.
 #![forbid(unsafe_code)]
 

@@ -121,3 +121,26 @@ fn a_curve_is_xml_with_its_regions_and_values() {
     let short = Field::new("u", "", 2, vec![0.0; 3]);
     assert!(matches!(CurvePicture::of(&wall, &short).to_svg(), Err(ExportError::WrongLength { .. })));
 }
+
+#[test]
+fn regions_and_sides_are_named_on_request() {
+    let mesh = Rectangle::new([0.0, 0.0], [4.0, 3.0], [4, 3]).region("steel <S235>").mesh().unwrap();
+    let silent = texts(&Picture::of(&mesh).to_svg().unwrap());
+    assert!(!silent.iter().any(|t| t == "steel &lt;S235&gt;" || t == "left"));
+    let all = texts(&Picture::of(&mesh).region_names(true).side_names(true).to_svg().unwrap());
+    for name in ["steel &lt;S235&gt;", "left", "right", "bottom", "top"] {
+        assert!(all.iter().any(|t| t == name), "{name} in {all:?}");
+    }
+}
+
+#[test]
+fn fields_of_high_order_have_pictures() {
+    let mesh = rectangle(2.0, 1.0, [2, 1]);
+    let line = Interval::uniform(0.0, 1.0, 2).mesh().unwrap();
+    for order in 1..=12 {
+        let field = Field::of_function(&mesh, "u", "", order, |x| (3.0 * x[0]).sin() * x[1]);
+        texts(&Picture::of(&mesh).field(&field).contours(6).to_svg().unwrap());
+        let field = Field::of_function(&line, "u", "", order, |x| (6.0 * x[0]).sin());
+        texts(&CurvePicture::of(&line, &field).to_svg().unwrap());
+    }
+}

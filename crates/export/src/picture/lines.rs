@@ -15,7 +15,7 @@ pub(crate) fn joined(segments: &[[Pixel; 2]]) -> String {
 }
 
 /// Lines that use each segment once; a closed line ends where it begins.
-fn chains(segments: &[[Pixel; 2]]) -> Vec<Vec<Pixel>> {
+pub(crate) fn chains(segments: &[[Pixel; 2]]) -> Vec<Vec<Pixel>> {
     let key = |p: Pixel| p.map(|c| (c / GRID).round() as i64);
     let mut at: BTreeMap<[i64; 2], Vec<usize>> = BTreeMap::new();
     for (i, [a, b]) in segments.iter().enumerate() {

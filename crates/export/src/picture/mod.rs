@@ -11,9 +11,11 @@ mod frame;
 mod layout;
 mod lines;
 mod markers;
+mod names;
 mod parabola;
 mod pieces;
 mod raster;
+mod rooms;
 mod scan;
 mod shade;
 mod svg;
@@ -25,6 +27,7 @@ use hypercircle_mesh::Mesh;
 use self::colors::Scale;
 use self::layout::{Layout, Wishes};
 use self::markers::Mark;
+use self::names::Notes;
 use self::svg::Svg;
 use crate::vtu::check_cells;
 use crate::{ExportError, Field};
@@ -67,6 +70,8 @@ pub struct Picture<'a> {
     mesh_lines: bool,
     arrows: Option<(&'a [[f64; 2]], String)>,
     markers: Vec<([f64; 2], String)>,
+    region_names: bool,
+    side_names: bool,
 }
 
 impl<'a> Picture<'a> {
@@ -82,6 +87,8 @@ impl<'a> Picture<'a> {
             mesh_lines: false,
             arrows: None,
             markers: Vec::new(),
+            region_names: false,
+            side_names: false,
         }
     }
 
@@ -133,6 +140,18 @@ impl<'a> Picture<'a> {
         self
     }
 
+    /// Whether to write the names of regions into them.
+    pub fn region_names(mut self, wanted: bool) -> Self {
+        self.region_names = wanted;
+        self
+    }
+
+    /// Whether to write the names of sides along them.
+    pub fn side_names(mut self, wanted: bool) -> Self {
+        self.side_names = wanted;
+        self
+    }
+
     /// The text of the SVG file.
     ///
     /// # Errors
@@ -156,9 +175,23 @@ impl<'a> Picture<'a> {
         }
         layout.draw(&mut svg, &self.length_unit);
         let marks = self.marks(&layout)?;
-        let notes = markers::draw(&mut svg, layout.frame, &marks, &[]);
+        let names = self.draw_names(&mut svg, &layout);
+        let mut notes = markers::draw(&mut svg, layout.frame, &marks, &names.points());
+        notes.extend(names.lines);
         let height = svg.notes(&notes, layout.frame[0].min(24.0), layout.below, layout.width());
         Ok(svg.finish(layout.width(), height))
+    }
+
+    /// Writes names; gives those without room, to be listed.
+    fn draw_names(&self, svg: &mut Svg, layout: &Layout) -> Notes {
+        let mut notes = Notes::default();
+        if self.side_names {
+            names::sides(svg, layout, self.mesh, &mut notes);
+        }
+        if self.region_names {
+            names::regions(svg, layout, self.mesh, &mut notes);
+        }
+        notes
     }
 
     fn check(&self) -> Result<(), ExportError> {

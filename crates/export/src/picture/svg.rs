@@ -59,6 +59,15 @@ impl Svg {
         self.text(at, size, anchor, text);
     }
 
+    /// The same in italics around a point, with further attributes (which are XML already).
+    pub(crate) fn rimmed_italics(&mut self, at: Pixel, size: f64, text: &str, attributes: &str) {
+        let rim = "stroke=\"#fff\" stroke-width=\"3\" stroke-opacity=\".85\" stroke-linejoin=\"round\"";
+        for rim in [rim, ""] {
+            let style = format!("font-style=\"italic\" {attributes}{rim}");
+            self.styled_text(at, size, Anchor::Middle, text, &style);
+        }
+    }
+
     /// A text that reads upwards.
     pub(crate) fn upright_text(&mut self, at: Pixel, size: f64, text: &str) {
         let turn = format!("transform=\"rotate(-90 {} {})\"", number(at[0]), number(at[1]));

@@ -37,6 +37,8 @@ fn iso10211_case1() -> Outcome {
         }
         println!("iso10211_case1: order {order}, {} unknowns, {largest:e} K", solution.unknown_count());
         assert!(largest < tolerance, "order {order}: {largest:e}");
+        // At the jump the mean is taken.
+        assert!((solution.value(&[0.0, 2.0])? - 10.0).abs() < 1e-12);
         // Data that jump have no finite energy: there can be no bound, and it is said so.
         assert!(matches!(solution.certificate()?.guarantee(), Guarantee::None(_)));
     }

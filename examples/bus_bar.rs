@@ -21,7 +21,7 @@ const FILM_ALONG: f64 = 8.0; // W/(m² K)
 const FILM_END: f64 = 45.0; // W/(m² K)
 
 /// Runs the example; `folder` takes the picture.
-pub fn run(folder: &Path) -> Result<String, Box<dyn Error>> {
+pub(crate) fn run(folder: &Path) -> Result<String, Box<dyn Error>> {
     let section = WIDTH * THICKNESS;
     let perimeter = 2.0 * (WIDTH + THICKNESS);
     let density = CURRENT / section; // A/m²

@@ -92,7 +92,7 @@ fn coldest(answer: &Answer<2>) -> Result<Extreme<2>, Box<dyn Error>> {
 
 /// All results of a run.
 #[derive(Debug)]
-pub struct Report {
+pub(crate) struct Report {
     designed: Answer<2>,
     variant: Answer<2>,
     heat_flow: Enclosure,
@@ -102,7 +102,7 @@ pub struct Report {
 
 impl Report {
     /// From outline to results.
-    pub fn new() -> Result<Self, Box<dyn Error>> {
+    pub(crate) fn new() -> Result<Self, Box<dyn Error>> {
         let started = Instant::now();
         let mesh = Arc::new(section()?);
         let designed = leak(&mesh, 50.0)?; // steel through and through
@@ -112,7 +112,7 @@ impl Report {
     }
 
     /// The figures as one JSON document.
-    pub fn json(&self) -> Result<String, Box<dyn Error>> {
+    pub(crate) fn json(&self) -> Result<String, Box<dyn Error>> {
         let interval = |e: &Enclosure| json!({ "value": e.value, "lower": e.lower, "upper": e.upper });
         let document = json!({
             "heat_flow": interval(&self.heat_flow),
@@ -125,7 +125,7 @@ impl Report {
     }
 
     /// The note that is handed over.
-    pub fn note(&self) -> Result<String, Box<dyn Error>> {
+    pub(crate) fn note(&self) -> Result<String, Box<dyn Error>> {
         let dew = dew_point(HALL, HALL_HUMIDITY);
         let mut results = Table::new(&["", "steel channel", "with thermal break"]);
         let flow = |e: &Enclosure| format_interval(e.value, e.lower, e.upper, "W/m");
@@ -158,7 +158,7 @@ impl Report {
     }
 
     /// Writes picture, field file and note to a folder.
-    pub fn save(&self, folder: &Path) -> Result<(), Box<dyn Error>> {
+    pub(crate) fn save(&self, folder: &Path) -> Result<(), Box<dyn Error>> {
         std::fs::create_dir_all(folder)?;
         let field = self.designed.field("temperature", "°C");
         let fluxes = self.designed.fluxes();
@@ -182,7 +182,7 @@ impl Report {
 }
 
 /// Runs the example with its arguments; `folder` takes what it writes.
-pub fn run(arguments: &[String], folder: &Path) -> Result<String, Box<dyn Error>> {
+pub(crate) fn run(arguments: &[String], folder: &Path) -> Result<String, Box<dyn Error>> {
     let report = Report::new()?;
     if arguments.iter().any(|a| a == "--json") {
         return report.json();

@@ -8,7 +8,6 @@ mod random;
 mod truth;
 
 use hypercircle::Solution;
-use hypercircle::assembly::Space;
 use hypercircle::bounds::Certificate;
 use hypercircle::solve::{ConjugateGradients, LinearSolver, LinearSystem, Outcome, SolveError};
 use rayon::prelude::*;

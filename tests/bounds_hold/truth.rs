@@ -1,7 +1,7 @@
 //! The true error of a vector when the solution is known.
 
 use hypercircle::Solution;
-use hypercircle::assembly::{Condition, place, side_points};
+use hypercircle::assembly::{Condition, SideTables, place};
 use hypercircle::element::{Rule, Shape};
 
 /// √(∫ A∇e·∇e + ∫ c e² + ∫ α e² on Robin sides) for e = u − u_h, by quadrature eight degrees above the elements.
@@ -29,10 +29,11 @@ pub(crate) fn error<const D: usize>(
         }
     }
     let line = Rule::of_degree(Shape::Interval, if D == 1 { 0 } else { 2 * space.order() + 8 }).unwrap();
+    let sides = SideTables::new(space, line);
     for side in terms.condition_sides(mesh) {
         let Condition::Robin { film, .. } = side.condition else { continue };
         let length = mesh.side_measure(side.cell, side.local);
-        for (point, w) in side_points(shape, side.local, &line).iter().zip(line.weights()) {
+        for (point, w) in sides.points(side.local).iter().zip(sides.rule().weights()) {
             let (at, reference) = (place(mesh, side.cell, point), std::array::from_fn(|i| point[i]));
             let e = exact(&at.x).0 - space.value(values, side.cell, &reference);
             sum += w * length * film.at(&at) * e * e;

@@ -1,6 +1,6 @@
 //! Blocks of cells or sides as kernels see them.
 
-use hypercircle_element::{Rule, Table};
+use hypercircle_element::{Rule, Shape, Table};
 use hypercircle_mesh::CellId;
 
 use crate::Place;
@@ -65,14 +65,13 @@ impl<'a, const D: usize> Block<'a, D> {
         block
     }
 
-    /// The block of one side of one cell; `table` is the cell's basis at the points of the side (see
-    /// [`side_points`]). Weights integrate along the side.
+    /// The block of one side of one cell. Weights integrate along the side.
     #[must_use]
-    pub fn of_side(space: &Space<D>, cell: &'a [CellId; 1], local: u8, rule: &'a Rule, table: &'a Table) -> Self {
-        let mut block = Self::empty(cell, rule, table);
+    pub fn of_side(space: &Space<D>, cell: &'a [CellId; 1], local: u8, sides: &'a SideTables) -> Self {
+        let mut block = Self::empty(cell, sides.rule(), sides.table(local));
         block.push_map(space, cell[0]);
         let length = space.mesh().side_measure(cell[0], local);
-        for (point, w) in side_points(space.basis().shape(), local, rule).iter().zip(rule.weights()) {
+        for (point, w) in sides.points(local).iter().zip(sides.rule().weights()) {
             block.push_point(space, cell[0], &clip(point), w * length);
         }
         block
@@ -210,10 +209,57 @@ impl<const D: usize> CellView<'_, '_, D> {
     }
 }
 
+/// The basis of a cell at the points of a rule on each of its sides.
+///
+/// ```
+/// use hypercircle_assembly::{side_rule, SideTables, Space};
+/// use hypercircle_mesh::Rectangle;
+/// let space = Space::new(Rectangle::new([0.0; 2], [1.0; 2], [1, 1]).mesh()?.into(), 1)?;
+/// let sides = SideTables::new(&space, side_rule(&space)?);
+/// // On side 0 the function of the opposite vertex is zero.
+/// assert!(sides.table(0).values_at(0)[2].abs() < 1e-15);
+/// # Ok::<(), Box<dyn std::error::Error>>(())
+/// ```
+#[derive(Debug, Clone)]
+pub struct SideTables {
+    rule: Rule,
+    points: Vec<Vec<[f64; 2]>>,
+    tables: Vec<Table>,
+}
+
+impl SideTables {
+    /// For a space and a rule on the interval.
+    #[must_use]
+    pub fn new<const D: usize>(space: &Space<D>, rule: Rule) -> Self {
+        let shape = space.basis().shape();
+        let points: Vec<_> = (0..shape.vertex_count()).map(|local| side_points(shape, local as u8, &rule)).collect();
+        let tables = points.iter().map(|points| space.basis().table(points)).collect();
+        Self { rule, points, tables }
+    }
+
+    /// The rule along a side.
+    #[must_use]
+    pub fn rule(&self) -> &Rule {
+        &self.rule
+    }
+
+    /// Reference points of the cell on a side, in walking order of the side.
+    #[must_use]
+    pub fn points(&self, local: u8) -> &[[f64; 2]] {
+        &self.points[usize::from(local)]
+    }
+
+    /// The basis of the cell at these points.
+    #[must_use]
+    pub fn table(&self, local: u8) -> &Table {
+        &self.tables[usize::from(local)]
+    }
+}
+
 /// Reference points of a cell that lie on one of its sides, from a rule on the interval (on the point side of an
 /// interval cell: its end, for each point of the rule).
 #[must_use]
-pub fn side_points(shape: hypercircle_element::Shape, local: u8, rule: &Rule) -> Vec<[f64; 2]> {
+pub(crate) fn side_points(shape: Shape, local: u8, rule: &Rule) -> Vec<[f64; 2]> {
     let ends = shape.side_vertices(usize::from(local));
     let (a, b) = (shape.vertices()[ends[0]], shape.vertices()[ends[ends.len() - 1]]);
     rule.points().iter().map(|t| pad(&[0, 1].map(|i| a[i] + t[0] * (b[i] - a[i])))).collect()

@@ -69,7 +69,7 @@ impl Constraints {
             let Condition::Dirichlet(data) = side.condition else { continue };
             let ends = mesh.side_vertices(side.cell, side.local);
             let ends = [ends[0], ends[D - 1]].map(|v| self.value(v.0).unwrap_or(0.0));
-            let points = crate::side_points(shape, side.local, &rule);
+            let points = crate::block::side_points(shape, side.local, &rule);
             let coefficients = bubble_coefficients(space.order(), &rule, |q, t| {
                 let at = place(mesh, side.cell, &points[q]);
                 let value = data.at(&at);

@@ -35,7 +35,7 @@ mod system;
 mod tensor;
 mod terms;
 
-pub use block::{Block, CellView, side_points};
+pub use block::{Block, CellView, SideTables};
 pub use coefficient::{Coefficient, PerRegion, Place, Scalar, Tensorial, tensorial};
 pub use constraint::{Constraints, Reduced};
 pub use error::AssemblyError;

@@ -3,8 +3,8 @@
 use crate::pattern::{Pattern, SparseMatrix};
 use crate::terms::FilmLoad;
 use crate::{
-    AssemblyError, Block, Condition, Constraints, Diffusion, Load, Mass, MatrixKernel, Space, Strategy, Terms,
-    VectorKernel, cell_rule, side_points, side_rule,
+    AssemblyError, Block, Condition, Constraints, Diffusion, Load, Mass, MatrixKernel, SideTables, Space, Strategy,
+    Terms, VectorKernel, cell_rule, side_rule,
 };
 
 /// Matrix and load of all unknowns, Dirichlet conditions beside them ([`Constraints`]): K u − b is then the balance of
@@ -98,16 +98,12 @@ impl System {
         terms: &Terms<D>,
     ) -> Result<(), AssemblyError> {
         let mesh = space.mesh();
-        let shape = space.basis().shape();
-        let rule = side_rule(space)?;
-        let tables: Vec<_> = (0..shape.vertex_count())
-            .map(|local| space.basis().table(&side_points(shape, local as u8, &rule)))
-            .collect();
+        let sides = SideTables::new(space, side_rule(space)?);
         let n = space.basis().nodes().len();
         let (mut matrix, mut vector) = (vec![0.0; n * n], vec![0.0; n]);
         for side in terms.condition_sides(mesh) {
             let cell = [side.cell];
-            let block = Block::of_side(space, &cell, side.local, &rule, &tables[usize::from(side.local)]);
+            let block = Block::of_side(space, &cell, side.local, &sides);
             matrix.fill(0.0);
             vector.fill(0.0);
             match side.condition {

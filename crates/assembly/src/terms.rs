@@ -131,7 +131,7 @@ impl<const D: usize> Terms<D> {
                 Condition::Neumann(_) => false,
                 Condition::Robin { film, .. } => {
                     let mut positive = false;
-                    for point in crate::side_points(space.basis().shape(), side.local, &rule) {
+                    for point in crate::block::side_points(space.basis().shape(), side.local, &rule) {
                         let at = place(mesh, side.cell, &point);
                         let value = film.at(&at);
                         check::not_negative(mesh, "film coefficient", &at, value)?;

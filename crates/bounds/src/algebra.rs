@@ -64,8 +64,8 @@ fn residual<const D: usize>(
     }
     for side in candidate.terms.condition_sides(space.mesh()) {
         let state = SideState::visit(candidate, reference, side.cell, side.local);
-        let table = &reference.primal_on_sides[usize::from(side.local)];
-        for (q, w) in reference.side_rule.weights().iter().enumerate() {
+        let table = reference.sides.table(side.local);
+        for (q, w) in reference.sides.rule().weights().iter().enumerate() {
             let inflow = match &state.kind {
                 SideKind::Dirichlet => continue,
                 SideKind::Neumann(inflow) => inflow[q],

@@ -289,7 +289,7 @@ impl<const D: usize> Judge<'_, D> {
             let own = &moments[usize::from(local) * per_side..usize::from(local + 1) * per_side];
             let outflow =
                 |q: usize| own.iter().zip(&self.reference.legendre[q]).map(|(m, l)| m * l).sum::<f64>() / side.length;
-            let weights = self.reference.side_rule.weights();
+            let weights = self.reference.sides.rule().weights();
             match &side.kind {
                 SideKind::Dirichlet => {}
                 SideKind::Neumann(inflow) => {

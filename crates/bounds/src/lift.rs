@@ -3,7 +3,7 @@
 //! On a Dirichlet side let δ = g − u_h, zero at its ends. The function w = (λ₀ + λ₁) δ(λ₁ / (λ₀ + λ₁)) continues δ into the
 //! cell and vanishes on its other sides; its energy is an integral along the side and enters the bound.
 
-use hypercircle_assembly::{AssemblyError, Condition, place, side_points};
+use hypercircle_assembly::{AssemblyError, Condition, SideTables, Space, place};
 use hypercircle_element::{Rule, Shape, unit_legendre};
 use hypercircle_mesh::{CellId, Mesh};
 
@@ -20,7 +20,7 @@ pub(crate) fn energies<const D: usize>(
     let mesh = candidate.space.mesh();
     let mut energies: Vec<(CellId, f64)> = Vec::new();
     let sides = candidate.terms.condition_sides(mesh);
-    let fit = Fit::new(candidate.space.order() + 7)?;
+    let fit = Fit::new(candidate.space)?;
     for side in sides {
         let Condition::Dirichlet(data) = side.condition else { continue };
         let deviation = |point: &[f64; 2]| {
@@ -30,7 +30,7 @@ pub(crate) fn energies<const D: usize>(
         };
         let shape = candidate.space.basis().shape();
         let mut corners = shape.side_vertices(side.local.into()).iter().map(|i| deviation(&shape.vertices()[*i]));
-        let along: Vec<_> = side_points(shape, side.local, &fit.rule).iter().map(&deviation).collect();
+        let along: Vec<_> = fit.sides.points(side.local).iter().map(&deviation).collect();
         let size = candidate.space.unknowns(side.cell).iter().map(|k| candidate.u[*k as usize].abs());
         let scale = along.iter().map(|(g, _)| g.abs()).chain(size).fold(0.0, f64::max);
         if corners.any(|(_, d)| d.abs() > 1e3 * ROUNDING * scale) {
@@ -53,16 +53,17 @@ pub(crate) fn energies<const D: usize>(
 
 /// Fits the slope of a deviation along a side.
 struct Fit {
-    rule: Rule,
+    sides: SideTables,
     degree: usize,
     legendre: Vec<Vec<f64>>,
 }
 
 impl Fit {
-    fn new(degree: usize) -> Result<Self, AssemblyError> {
+    fn new<const D: usize>(space: &Space<D>) -> Result<Self, AssemblyError> {
+        let degree = space.order() + 7;
         let rule = Rule::of_degree(Shape::Interval, 2 * degree + 6)?;
         let legendre = rule.points().iter().map(|t| unit_legendre(degree, t[0])).collect();
-        Ok(Self { rule, degree, legendre })
+        Ok(Self { sides: SideTables::new(space, rule), degree, legendre })
     }
 
     /// δ′ at the points of the rule: its Legendre coefficients are −∫ δ ℓ′ₙ, as δ vanishes at the ends.
@@ -74,7 +75,7 @@ impl Fit {
                     // ℓ′ₙ = 2 √(2n + 1) Σ √(2j + 1) ℓⱼ over j = n − 1, n − 3, …
                     let slope: f64 =
                         (0..n).rev().step_by(2).map(|j| (2.0 * j as f64 + 1.0).sqrt() * self.legendre[q][j]).sum();
-                    -self.rule.weights()[q] * deviation[q] * 2.0 * (2.0 * n as f64 + 1.0).sqrt() * slope
+                    -self.sides.rule().weights()[q] * deviation[q] * 2.0 * (2.0 * n as f64 + 1.0).sqrt() * slope
                 })
                 .sum();
             for (slope, l) in slopes.iter_mut().zip(&self.legendre) {
@@ -98,7 +99,7 @@ impl Fit {
         let reaction = state.reaction.iter().fold(0.0_f64, |m, c| m.max(*c));
         let slopes = self.slopes(deviation);
         let mut energy = 0.0;
-        for (q, (s, w)) in self.rule.points().iter().zip(self.rule.weights()).enumerate() {
+        for (q, (s, w)) in self.sides.rule().points().iter().zip(self.sides.rule().weights()).enumerate() {
             let s = s[0];
             let w_gradient: [f64; D] =
                 std::array::from_fn(|i| -deviation[q] * apex[i] + slopes[q] * ((1.0 - s) * end[i] - s * start[i]));

@@ -1,6 +1,6 @@
 //! Everything about a reference cell that the local problems need, tabulated once for an order.
 
-use hypercircle_assembly::{AssemblyError, Space, cell_rule, side_points, side_rule};
+use hypercircle_assembly::{AssemblyError, SideTables, Space, cell_rule, side_rule};
 use hypercircle_element::{
     Lagrange, RaviartThomas, Rule, Shape, Table, orthonormal_values, polynomial_count, unit_legendre,
 };
@@ -10,11 +10,9 @@ use hypercircle_element::{
 pub(crate) struct Reference {
     pub(crate) shape: Shape,
     pub(crate) rule: Rule,
-    pub(crate) side_rule: Rule,
     /// The primal basis at the cell points and at the points of each side.
     pub(crate) primal: Table,
-    pub(crate) primal_on_sides: Vec<Table>,
-    pub(crate) side_points: Vec<Vec<[f64; 2]>>,
+    pub(crate) sides: SideTables,
     /// Hats at the cell points; hats at side points follow from t.
     pub(crate) hats: Vec<[f64; 3]>,
     /// Orthonormal test polynomials of degree q at the cell points.
@@ -53,26 +51,28 @@ impl Reference {
         let side_extra = if D == 1 { 0 } else { extra };
         let side_rule = Rule::of_degree(Shape::Interval, side_rule(space)?.degree() + side_extra)?;
         let fluxes = RaviartThomas::new(shape, order)?;
-        let side_points: Vec<_> =
-            (0..shape.vertex_count()).map(|local| side_points(shape, local as u8, &side_rule)).collect();
+        let sides = SideTables::new(space, side_rule);
         let points = rule.points();
         Ok(Self {
             shape,
             primal: space.basis().table(points),
-            primal_on_sides: side_points.iter().map(|points| space.basis().table(points)).collect(),
             hats: points.iter().map(|at| shape.hats(at)).collect(),
             tests: points.iter().map(|at| orthonormal_values(shape, order, at)).collect(),
             fields: points.iter().map(|at| fluxes.fields(at)).collect(),
             divergences: points.iter().map(|at| fluxes.divergences(at)).collect(),
-            legendre: side_rule.points().iter().map(|t| unit_legendre(fluxes.side_moment_count() - 1, t[0])).collect(),
+            legendre: sides
+                .rule()
+                .points()
+                .iter()
+                .map(|t| unit_legendre(fluxes.side_moment_count() - 1, t[0]))
+                .collect(),
             moments: fluxes.moment_count(),
             side_moments: fluxes.side_moment_count(),
             test_count: polynomial_count(shape, order),
             completion: fluxes.completion()?,
             stream: if shape == Shape::Triangle { Stream::new(&fluxes, &rule)? } else { Stream::default() },
-            side_points,
+            sides,
             rule,
-            side_rule,
         })
     }
 

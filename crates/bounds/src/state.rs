@@ -237,13 +237,12 @@ impl SideState {
         local: u8,
     ) -> Self {
         let mesh = candidate.space.mesh();
-        let side = usize::from(local);
         let unknowns = candidate.space.unknowns(cell);
-        let table = &reference.primal_on_sides[side];
-        let u: Vec<f64> = (0..reference.side_rule.len())
+        let table = reference.sides.table(local);
+        let u: Vec<f64> = (0..reference.sides.rule().len())
             .map(|q| unknowns.iter().zip(table.values_at(q)).map(|(k, v)| candidate.u[*k as usize] * v).sum())
             .collect();
-        let places = || reference.side_points[side].iter().map(|point| place(mesh, cell, point));
+        let places = || reference.sides.points(local).iter().map(|point| place(mesh, cell, point));
         let condition = mesh.named_side(cell, local).and_then(|name| candidate.terms.condition(name));
         let kind = match condition {
             None => SideKind::Neumann(vec![0.0; u.len()]),
@@ -268,7 +267,7 @@ impl SideState {
     pub(crate) fn role(&self, reference: &Reference, from_start: bool) -> SideRole {
         let n = reference.side_moments;
         let hat = |q: usize| {
-            let t = reference.side_rule.points()[q][0];
+            let t = reference.sides.rule().points()[q][0];
             // The end of an interval is its own vertex: its hat is one there.
             if reference.shape.dimension() == 1 {
                 1.0
@@ -278,7 +277,7 @@ impl SideState {
                 t
             }
         };
-        let weights = reference.side_rule.weights();
+        let weights = reference.sides.rule().weights();
         match &self.kind {
             SideKind::Dirichlet => SideRole::Free,
             SideKind::Neumann(inflow) => {

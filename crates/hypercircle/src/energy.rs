@@ -4,7 +4,7 @@
 //! Dirichlet data, and P(v) − P(u) = |||v − u|||². With the guaranteed bound η of the error the true P(u) lies between
 //! P(u_h) − η² and P(u_h): the width goes with the square of the error of the field.
 
-use hypercircle_assembly::{Condition, side_points, side_rule};
+use hypercircle_assembly::{Condition, SideTables, cell_rule, place, side_rule};
 use hypercircle_bounds::{Enclosure, Guarantee};
 use hypercircle_mesh::SideNameId;
 
@@ -138,13 +138,13 @@ impl<const D: usize> Solution<D> {
     fn energies(&self) -> Result<Energies, Error> {
         let mesh = self.mesh();
         let mut sum = Energies::default();
-        let rule = hypercircle_assembly::cell_rule(self.space())?;
+        let rule = cell_rule(self.space())?;
         let table = self.basis().table(rule.points());
         for cell in mesh.cells() {
             let scale = mesh.cell_measure(cell) / self.basis().shape().measure();
             let unknowns = self.space().unknowns(cell);
             for (q, (point, w)) in rule.points().iter().zip(rule.weights()).enumerate() {
-                let at = hypercircle_assembly::place(mesh, cell, point);
+                let at = place(mesh, cell, point);
                 let (mut u, mut slope) = (0.0, [0.0; D]);
                 for ((k, value), gradient) in unknowns.iter().zip(table.values_at(q)).zip(table.gradients_at(q)) {
                     u += self.values()[*k as usize] * value;
@@ -166,18 +166,16 @@ impl<const D: usize> Solution<D> {
 
     fn add_sides(&self, sum: &mut Energies) -> Result<(), Error> {
         let mesh = self.mesh();
-        let rule = side_rule(self.space())?;
-        let shape = self.basis().shape();
-        let points: Vec<_> = (0..shape.vertex_count()).map(|local| side_points(shape, local as u8, &rule)).collect();
-        let tables: Vec<_> = points.iter().map(|points| self.basis().table(points)).collect();
+        let sides = SideTables::new(self.space(), side_rule(self.space())?);
         for side in self.terms().condition_sides(mesh) {
-            let local = usize::from(side.local);
             let length = mesh.side_measure(side.cell, side.local);
-            for (q, (point, w)) in points[local].iter().zip(rule.weights()).enumerate() {
-                let at = hypercircle_assembly::place(mesh, side.cell, point);
+            for (q, (point, w)) in sides.points(side.local).iter().zip(sides.rule().weights()).enumerate() {
+                let at = place(mesh, side.cell, point);
                 let unknowns = self.space().unknowns(side.cell).iter();
-                let u: f64 =
-                    unknowns.zip(tables[local].values_at(q)).map(|(k, v)| self.values()[*k as usize] * v).sum();
+                let u: f64 = unknowns
+                    .zip(sides.table(side.local).values_at(q))
+                    .map(|(k, v)| self.values()[*k as usize] * v)
+                    .sum();
                 match side.condition {
                     Condition::Dirichlet(_) => {}
                     Condition::Neumann(inflow) => sum.add(w * length, 0.0, inflow.at(&at) * u),

@@ -1,6 +1,6 @@
 //! What one asks of a solution: integrals, flows, the balance, extremes.
 
-use hypercircle_assembly::{Condition, Place, cell_rule, place, side_points, side_rule};
+use hypercircle_assembly::{Condition, Place, SideTables, cell_rule, place, side_rule};
 use hypercircle_mesh::{CellId, SideNameId};
 
 use crate::{Error, Solution};
@@ -130,21 +130,19 @@ impl<const D: usize> Solution<D> {
     fn inflows(&self) -> Result<Vec<f64>, Error> {
         let mesh = self.mesh();
         let mut flows = vec![0.0; mesh.side_names().len()];
-        let rule = side_rule(self.space())?;
         let shape = self.basis().shape();
-        let per_side: Vec<_> = (0..shape.vertex_count()).map(|local| side_points(shape, local as u8, &rule)).collect();
-        let tables: Vec<_> = per_side.iter().map(|points| self.basis().table(points)).collect();
+        let sides = SideTables::new(self.space(), side_rule(self.space())?);
         // Prescribed unknowns of each side with the length that they stand for.
         let mut held: Vec<(u32, SideNameId, f64)> = Vec::new();
         for side in self.terms().condition_sides(mesh) {
             let (local, length) = (usize::from(side.local), mesh.side_measure(side.cell, side.local));
             let unknowns = self.space().unknowns(side.cell);
             let u = |q: usize| -> f64 {
-                let values = tables[local].values_at(q);
+                let values = sides.table(side.local).values_at(q);
                 unknowns.iter().zip(values).map(|(k, v)| self.values()[*k as usize] * v).sum()
             };
-            let places = per_side[local].iter().map(|point| place(mesh, side.cell, point));
-            let weights = rule.weights().iter().map(|w| w * length);
+            let places = sides.points(side.local).iter().map(|point| place(mesh, side.cell, point));
+            let weights = sides.rule().weights().iter().map(|w| w * length);
             match side.condition {
                 Condition::Dirichlet(_) => {
                     let corners = shape.side_vertices(local);

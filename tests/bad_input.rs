@@ -243,6 +243,64 @@ fn endings_keep_the_best_result() {
     assert!(matches!(answer.ending(), Ending::SolverFailed(_)) && !answer.rounds().is_empty());
 }
 
+/// Singularities so strong that cells reach the resolution of the coordinates, and data that jump: the run ends by itself.
+#[test]
+fn runs_without_hope_end_with_what_they_have() {
+    let mut board = Outline::new();
+    for (name, corner) in [("a", (0.0, 0.0)), ("b", (0.5, 0.0)), ("b", (0.0, 0.5)), ("a", (0.5, 0.5))] {
+        board.region(name, rectangle(corner, (corner.0 + 0.5, corner.1 + 0.5))).unwrap();
+    }
+    board.side("left", between((0.0, 0.0), (0.0, 1.0))).unwrap();
+    board.side("right", between((1.0, 0.0), (1.0, 1.0))).unwrap();
+    let problem = Diffusion::on(board.mesh(0.3).unwrap())
+        .conductivity("a", 1.0)
+        .conductivity("b", 1e5)
+        .dirichlet("left", 0.0)
+        .dirichlet("right", 1.0)
+        .order(2);
+    let answer = problem.solve_within(Tolerance::FlowRelative(1e-3)).unwrap();
+    println!("{:?} after {} rounds: {}", answer.ending(), answer.rounds().len(), answer.exchanged_flow().unwrap());
+    assert!(matches!(answer.ending(), Ending::Met | Ending::Stuck));
+    // The effective conductivity √(k₁ k₂) of the checkerboard (J. B. Keller, J. Math. Phys. 5, 1964).
+    assert!(answer.exchanged_flow().unwrap().holds(1e5_f64.sqrt()));
+
+    let jump = stated().dirichlet("top", 20.0).solve_within(Tolerance::Relative(0.1)).unwrap();
+    assert_eq!(jump.ending(), &Ending::Stuck);
+    assert!((jump.value(&[0.5, 0.9]).unwrap() - 10.0).abs() < 10.0);
+}
+
+/// The bound rises while the peak of a closure is not yet seen: no reason to give up.
+#[test]
+fn a_rising_bound_is_no_end() {
+    let peak = |at: &Place<2>| {
+        let r2 = (at.x[0] - 0.51).powi(2) + (at.x[1] - 0.117).powi(2);
+        4e5 * (1.0 - 1e5 * r2) * (-1e5 * r2).exp()
+    };
+    let mut problem = Diffusion::on(plate()).conductivity("plate", 1.0).source("plate", peak).order(2);
+    for side in ["left", "right", "bottom", "top"] {
+        problem = problem.dirichlet(side, 0.0);
+    }
+    let answer = problem.solve_within(Tolerance::Relative(0.02)).unwrap();
+    assert!(answer.is_met(), "{:?} {:?}", answer.ending(), answer.rounds().last());
+    let top = answer.extremes().most;
+    assert!((top.value - 1.0).abs() < 1e-3 && (top.at[0] - 0.51).abs() < 1e-3, "{top:?}");
+}
+
+#[test]
+fn extremes_between_nodes_are_found() {
+    // u = 100 x (1 − x) + 3: its top lies inside the middle one of three cells, on no node.
+    let bar = Diffusion::on(Interval::from_nodes(&[0.0, 0.3, 0.9, 1.0]).mesh().unwrap())
+        .conductivity_everywhere(1.0)
+        .source_everywhere(200.0)
+        .dirichlet("start", 3.0)
+        .dirichlet("end", 3.0)
+        .order(2)
+        .solve()
+        .unwrap();
+    let top = bar.extremes().most;
+    assert!((top.value - 28.0).abs() < 1e-12 && (top.at[0] - 0.5).abs() < 1e-6, "{top:?}");
+}
+
 #[test]
 fn extremes_of_scale_stay_finite() {
     for (length, k) in [(1e-9, 1e-12), (1e-9, 1e12), (1e9, 1e-12), (1e9, 1e12), (1e-150, 1.0), (1e150, 1.0)] {

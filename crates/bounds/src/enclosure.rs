@@ -93,9 +93,12 @@ impl Enclosure {
 }
 
 impl fmt::Display for Enclosure {
+    /// `value [lower, upper]`, with as many decimals as two digits of the width need, or as many as the format asks for; printed ends
+    /// never move inwards.
     fn fmt(&self, f: &mut fmt::Formatter<'_>) -> fmt::Result {
-        let digits = f.precision().unwrap_or(6);
-        // Printing rounds to nearest: the ends are nudged by half a unit so that they never move inwards.
+        let needed = (1.0 - self.width().log10().floor()).clamp(0.0, 17.0);
+        let digits = f.precision().unwrap_or(if needed.is_finite() { needed as usize } else { 6 });
+        // Printing rounds to nearest: the ends are nudged by half a unit.
         let half = 0.5 * 10.0_f64.powi(-(digits as i32));
         write!(f, "{:.digits$} [{:.digits$}, {:.digits$}]", self.value, self.lower - half, self.upper + half)
     }
@@ -109,6 +112,9 @@ mod tests {
     fn printed_ends_never_move_inwards() {
         let e = Enclosure::new(1.0, 0.99996, 1.00004, Guarantee::Full);
         assert_eq!(format!("{e:.4}"), "1.0000 [0.9999, 1.0001]");
+        assert_eq!(format!("{e}"), "1.000000 [0.999959, 1.000041]");
+        let tiny = Enclosure::new(2e-9, 1.99e-9, 2.01e-9, Guarantee::Full);
+        assert_eq!(format!("{tiny}"), "0.000000002000 [0.000000001989, 0.000000002011]");
     }
 
     #[test]

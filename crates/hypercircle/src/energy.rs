@@ -125,7 +125,7 @@ impl<const D: usize> Solution<D> {
         levels.sort_by(f64::total_cmp);
         levels.dedup();
         let &[low, high] = levels.as_slice() else {
-            return Err(missing(format!("there are {} levels, {levels:?}; it takes exactly two", levels.len())));
+            return Err(missing(format!("the levels are {levels:?}; it takes exactly two")));
         };
         Ok(self.enclosed(RESULT)?.scaled(1.0 / (high - low)))
     }

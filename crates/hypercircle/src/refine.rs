@@ -6,7 +6,7 @@ use std::time::{Duration, Instant};
 
 use hypercircle_assembly::{Space, Terms};
 use hypercircle_bounds::{Guarantee, mark};
-use hypercircle_mesh::Mesh;
+use hypercircle_mesh::{Mesh, MeshError};
 use hypercircle_solve::{LinearSolver, SolveError};
 
 use crate::budget::Limit;
@@ -98,7 +98,8 @@ pub enum Ending {
     OutOfBudget(Limit),
     /// The watch said stop.
     Cancelled,
-    /// The bound stays where it is: rounding is reached, or there is no bound (the reason is in the certificate).
+    /// The bound stays where it is: rounding or the resolution of the coordinates is reached, or there is no bound (the reason is in the
+    /// certificate).
     Stuck,
     /// The linear solver gave up on the next round.
     SolverFailed(SolveError),
@@ -153,10 +154,22 @@ impl<const D: usize> Deref for Answer<D> {
     }
 }
 
-/// A round that lowers the bound by less than this in `PATIENCE` rounds is no progress.
+/// A bound that falls to more than this share of itself in `PATIENCE` rounds is no progress.
 const PROGRESS: f64 = 0.999;
 const PATIENCE: usize = 8;
+/// A rising bound means that sampled data are only now being seen, unless it is as small as this: then it is rounding.
+const SEEN: f64 = 1e-8;
 
+/// Whether the bound has stayed where it is for long.
+fn is_stuck(rounds: &[Round], exact_data: bool) -> bool {
+    let [.., last] = rounds else { return false };
+    let Some(before) = rounds.len().checked_sub(PATIENCE + 1).map(|k| rounds[k]) else { return false };
+    let rising = last.bound > before.bound / PROGRESS;
+    !(last.bound <= PROGRESS * before.bound) && !(rising && !exact_data && last.relative > SEEN)
+}
+
+/// Cells smaller than this share of the largest coordinate are at the end of what coordinates resolve.
+const RESOLUTION: f64 = 1e-12;
 /// A round refines in at most so many passes, and no further than to so many times the cells.
 const PASSES: usize = 8;
 const GROWTH: f64 = 1.15;
@@ -193,9 +206,9 @@ pub(crate) fn pursue<const D: usize>(
         if signal == Signal::Stop {
             return Ok(Answer { solution, ending: Ending::Cancelled, rounds });
         }
-        let stale = rounds.len() > PATIENCE && round.bound > PROGRESS * rounds[rounds.len() - 1 - PATIENCE].bound;
+        let exact_data = certificate.guarantee() == &Guarantee::Full;
         let finer = refined(solution.mesh(), certificate.shares(), order, goal.share)?;
-        let Some(finer) = finer.filter(|_| !stale || unbounded) else {
+        let Some(finer) = finer.filter(|_| !is_stuck(&rounds, exact_data)) else {
             return Ok(Answer { solution, ending: Ending::Stuck, rounds });
         };
         let space = Space::new(Arc::new(finer), order)?;
@@ -216,7 +229,7 @@ pub(crate) fn pursue<const D: usize>(
 ///
 /// A cell of measure m adds about m^{p+1} to the square of the bound where the solution is smooth: the child with the part r of
 /// its parent's measure gets the part r^{p+1} of its share. At a singularity the true share is larger, so too little is refined rather
-/// than too much.
+/// than too much. Cells at the resolution of the coordinates are left as they are.
 fn refined<const D: usize>(
     mesh: &Arc<Mesh<D>>,
     shares: &[f64],
@@ -224,15 +237,21 @@ fn refined<const D: usize>(
     share: f64,
 ) -> Result<Option<Mesh<D>>, Error> {
     let enough = (GROWTH * mesh.cell_count() as f64) as usize;
+    let (low, high) = mesh.bounding_box();
+    let smallest = RESOLUTION * low.iter().chain(&high).fold(0.0_f64, |size, x| size.max(x.abs()));
     let mut finer: Option<Mesh<D>> = None;
     let mut shares = shares.to_vec();
     for _ in 0..PASSES {
         let now = finer.as_ref().unwrap_or(mesh);
-        let marked = mark(&shares, share);
+        let mut marked = mark(&shares, share);
+        marked.retain(|cell| now.cell_diameter(*cell) > smallest);
         if marked.is_empty() {
             break;
         }
-        let (next, relation) = now.bisect(&marked)?;
+        let (next, relation) = match now.bisect(&marked) {
+            Err(MeshError::DegenerateCell { .. }) => break,
+            other => other?,
+        };
         let exponent = (2 * order / D + 1) as i32;
         shares = next
             .cells()

@@ -12,87 +12,28 @@
 use std::cmp::Ordering;
 use std::collections::BinaryHeap;
 
-use hypercircle_assembly::{AssemblyError, Constraints, place};
+use hypercircle_assembly::{AssemblyError, Constraints, Space, place};
 use hypercircle_element::{Rule, orthonormal_values};
 use hypercircle_mesh::CellId;
-use rayon::prelude::*;
 
 use crate::reference::Reference;
-use crate::state::{Candidate, CellState, SideKind, SideState};
+use crate::state::{Candidate, SideKind, SideState};
+use crate::survey::Survey;
 
 /// A residual below this share of the sizes of its terms at every unknown is rounding.
 const ROUNDING: f64 = 1e-13;
-/// Cells whose residuals are found by one task, and between two ordered sums.
-const CELLS: usize = 1024;
-const BATCH: usize = 64 * CELLS;
-
-/// Residual of every unknown and the sum of the sizes of its terms, by the rules of the reference: what a finer rule than that of
-/// assembly sees of the data is part of the residual.
-fn residual<const D: usize>(
-    candidate: &Candidate<'_, D>,
-    reference: &Reference,
-) -> Result<(Vec<f64>, Vec<f64>), AssemblyError> {
-    let space = candidate.space;
-    let n = space.basis().nodes().len();
-    let cells: Vec<CellId> = space.mesh().cells().collect();
-    let (mut sums, mut sizes) = (vec![0.0; space.unknown_count()], vec![0.0; space.unknown_count()]);
-    let mut buffer = vec![[0.0; 2]; BATCH.min(cells.len()) * n];
-    for batch in cells.chunks(BATCH) {
-        let buffer = &mut buffer[..batch.len() * n];
-        buffer.fill([0.0; 2]);
-        let outcomes: Vec<_> = batch
-            .par_chunks(CELLS)
-            .zip(buffer.par_chunks_mut(CELLS * n))
-            .map_init(
-                || CellState::new(reference.rule.len()),
-                |state, (cells, parts)| {
-                    for (cell, part) in cells.iter().zip(parts.chunks_exact_mut(n)) {
-                        state.visit(candidate, reference, *cell)?;
-                        state.add_residual(reference, part);
-                    }
-                    Ok(())
-                },
-            )
-            .collect();
-        outcomes.into_iter().collect::<Result<(), AssemblyError>>()?;
-        for (cell, part) in batch.iter().zip(buffer.chunks_exact(n)) {
-            for (unknown, [term, size]) in space.unknowns(*cell).iter().zip(part) {
-                sums[*unknown as usize] += term;
-                sizes[*unknown as usize] += size;
-            }
-        }
-    }
-    for side in candidate.terms.condition_sides(space.mesh()) {
-        let state = SideState::visit(candidate, reference, side.cell, side.local);
-        let table = reference.sides.table(side.local);
-        for (q, w) in reference.sides.rule().weights().iter().enumerate() {
-            let inflow = match &state.kind {
-                SideKind::Dirichlet => continue,
-                SideKind::Neumann(inflow) => inflow[q],
-                SideKind::Robin(films, levels) => films[q] * (levels[q] - state.u[q]),
-            };
-            for (unknown, value) in space.unknowns(side.cell).iter().zip(table.values_at(q)) {
-                let term = w * state.length * inflow * value;
-                sums[*unknown as usize] += term;
-                sizes[*unknown as usize] += term.abs();
-            }
-        }
-    }
-    Ok((sums, sizes))
-}
 
 /// The residual as a density: coefficients in the primal basis, cell after cell. `None` if it is mere rounding.
 pub(crate) fn density<const D: usize>(
-    candidate: &Candidate<'_, D>,
-    reference: &Reference,
+    space: &Space<D>,
+    survey: &Survey,
     constraints: &Constraints,
 ) -> Result<Option<Vec<f64>>, AssemblyError> {
-    let space = candidate.space;
-    let (mut residual, sizes) = residual(candidate, reference)?;
+    let mut residual = survey.residual.clone();
     for unknown in constraints.unknowns() {
         residual[*unknown as usize] = 0.0;
     }
-    if residual.iter().zip(&sizes).all(|(r, size)| r.abs() <= ROUNDING * size) {
+    if residual.iter().zip(&survey.sizes).all(|(r, size)| r.abs() <= ROUNDING * size) {
         return Ok(None);
     }
     let n = space.basis().nodes().len();

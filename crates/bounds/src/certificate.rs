@@ -18,8 +18,10 @@ use hypercircle_mesh::{CellId, RegionId};
 use rayon::prelude::*;
 
 use crate::equilibrate::equilibrate;
+use crate::patch::Problem;
 use crate::reference::Reference;
 use crate::state::{Candidate, CellState, SideKind, SideState};
+use crate::survey::Survey;
 use crate::{Flux, Guarantee, algebra, lift};
 
 /// Rounding of the sums: the bound is enlarged by this share.
@@ -81,17 +83,24 @@ impl<const D: usize> Certificate<D> {
             return Err(AssemblyError::WrongLength { what: "vector of unknowns", given, expected });
         }
         let mut guarantee = sampled_or_full(space, terms);
-        let reference = Reference::new(space, if guarantee == Guarantee::Full { 0 } else { CLOSER })?;
-        let exactly = Candidate { space, terms, u, density: None };
-        let density = algebra::density(&exactly, &reference, &system.constraints)?;
-        let candidate = Candidate { density: density.as_deref(), ..exactly };
-        let mut moments = equilibrate(&candidate, &reference)?;
+        let reference = Reference::new(space, 0)?;
+        let closer = match guarantee {
+            Guarantee::Full => None,
+            _ => Some(Reference::new(space, CLOSER)?),
+        };
+        let closer = closer.as_ref().unwrap_or(&reference);
+        let candidate = Candidate { space, terms, u };
+        let mut survey = Survey::new(&candidate, closer)?;
+        let density = algebra::density(space, &survey, &system.constraints)?;
+        if let Some(density) = &density {
+            survey.take_off(&candidate, &reference, density);
+        }
+        let mut moments = equilibrate(&Problem { candidate, survey: &survey, reference: &reference, closer })?;
         let carried = density.as_ref().map(|density| algebra::flux(&candidate, &reference, density));
         if let Some(carried) = &carried {
             moments.iter_mut().zip(&carried.moments).for_each(|(m, c)| *m += c);
         }
-        let candidate = Candidate { density: None, ..candidate };
-        let judge = Judge { candidate, reference, moments: &moments, carried: carried.as_ref() };
+        let judge = Judge { candidate, reference: closer, moments: &moments, carried: carried.as_ref() };
         let mut parts = judge.all()?;
         let lifts = lift::energies(&judge.candidate, |cell| judge.state(cell))?;
         for (cell, energy) in &lifts {
@@ -189,7 +198,7 @@ fn sampled_or_full<const D: usize>(space: &Space<D>, terms: &Terms<D>) -> Guaran
 /// Judges the flux cell by cell.
 struct Judge<'a, const D: usize> {
     candidate: Candidate<'a, D>,
-    reference: Reference,
+    reference: &'a Reference,
     moments: &'a [f64],
     carried: Option<&'a algebra::Carried>,
 }
@@ -197,7 +206,8 @@ struct Judge<'a, const D: usize> {
 impl<const D: usize> Judge<'_, D> {
     fn state(&self, cell: CellId) -> Result<CellState<D>, AssemblyError> {
         let mut state = CellState::new(self.reference.rule.len());
-        state.visit(&self.candidate, &self.reference, cell)?;
+        state.visit(&self.candidate, self.reference, cell)?;
+        state.visit_supply(&self.candidate);
         Ok(state)
     }
 
@@ -212,7 +222,8 @@ impl<const D: usize> Judge<'_, D> {
                 |state, (chunk, parts)| {
                     for (k, part) in parts.iter_mut().enumerate() {
                         let cell = CellId((chunk * CELLS + k) as u32);
-                        state.visit(&self.candidate, &self.reference, cell)?;
+                        state.visit(&self.candidate, self.reference, cell)?;
+                        state.visit_supply(&self.candidate);
                         *part = self.cell(state);
                     }
                     Ok(())
@@ -284,7 +295,7 @@ impl<const D: usize> Judge<'_, D> {
             if mesh.topology().neighbor(cell, local).is_some() {
                 continue;
             }
-            let side = SideState::visit(&self.candidate, &self.reference, cell, local);
+            let side = SideState::visit(&self.candidate, self.reference, cell, local);
             let per_side = self.reference.side_moments;
             let own = &moments[usize::from(local) * per_side..usize::from(local + 1) * per_side];
             let outflow =

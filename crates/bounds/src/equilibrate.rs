@@ -5,9 +5,7 @@ use hypercircle_mesh::VertexId;
 use rayon::prelude::*;
 
 use crate::interval_1d;
-use crate::patch::PatchSolver;
-use crate::reference::Reference;
-use crate::state::Candidate;
+use crate::patch::{PatchSolver, Problem};
 
 /// Vertices worked on by one task: fixed, so that nothing depends on the number of threads.
 const PATCHES: usize = 256;
@@ -15,22 +13,19 @@ const PATCHES: usize = 256;
 const CELLS: usize = 4096;
 
 /// Moments of the equilibrated flux in every cell.
-pub(crate) fn equilibrate<const D: usize>(
-    candidate: &Candidate<'_, D>,
-    reference: &Reference,
-) -> Result<Vec<f64>, AssemblyError> {
-    if D == 1 { interval_1d::sweep(candidate, reference) } else { patches(candidate, reference) }
+pub(crate) fn equilibrate<const D: usize>(problem: &Problem<'_, D>) -> Result<Vec<f64>, AssemblyError> {
+    if D == 1 { interval_1d::sweep(problem) } else { patches(problem) }
 }
 
-fn patches<const D: usize>(candidate: &Candidate<'_, D>, reference: &Reference) -> Result<Vec<f64>, AssemblyError> {
-    let mesh = candidate.space.mesh();
+fn patches<const D: usize>(problem: &Problem<'_, D>) -> Result<Vec<f64>, AssemblyError> {
+    let mesh = problem.candidate.space.mesh();
     let offsets = mesh.topology().around_offsets();
-    let n = reference.moments;
+    let n = problem.reference.moments;
     let vertices = mesh.vertex_count();
     let parts: Vec<Result<Vec<f64>, AssemblyError>> = (0..vertices.div_ceil(PATCHES))
         .into_par_iter()
         .map_init(
-            || PatchSolver::new(candidate, reference),
+            || PatchSolver::new(problem),
             |solver, part| {
                 let (first, last) = (part * PATCHES, ((part + 1) * PATCHES).min(vertices));
                 let mut out = Vec::with_capacity((offsets[last] - offsets[first]) as usize * n);

@@ -7,26 +7,22 @@
 use hypercircle_assembly::AssemblyError;
 use hypercircle_mesh::CellId;
 
+use crate::patch::Problem;
 use crate::reference::Reference;
 use crate::state::{Candidate, CellState, SideKind, SideRole, SideState};
 
 /// Moments of the flux in every cell, in one dimension.
-pub(crate) fn sweep<const D: usize>(
-    candidate: &Candidate<'_, D>,
-    reference: &Reference,
-) -> Result<Vec<f64>, AssemblyError> {
+pub(crate) fn sweep<const D: usize>(problem: &Problem<'_, D>) -> Result<Vec<f64>, AssemblyError> {
+    let (candidate, reference) = (&problem.candidate, problem.closer);
     let mesh = candidate.space.mesh();
-    let (n, tests) = (reference.moments, reference.test_count);
-    let mut state = CellState::new(reference.rule.len());
+    let n = reference.moments;
     let mut moments = vec![0.0; mesh.cell_count() * n];
     let mut part = vec![0.0; n];
     // Flow out of the lower cell at a vertex, once that cell has been visited.
     let mut handed: Vec<Option<f64>> = vec![None; mesh.vertex_count()];
-    let mut divergence = vec![0.0; tests];
     for cell in chains(candidate).concat() {
-        state.visit(candidate, reference, cell)?;
         for (i, vertex) in mesh.cell_vertices(cell).iter().enumerate() {
-            state.vertex_moments(reference, i, &mut divergence);
+            let divergence = problem.survey.vertex(reference, cell, i);
             let total = divergence[0]; // the first test polynomial is one
             let out = if mesh.topology().neighbor(cell, i as u8).is_none() {
                 match SideState::visit(candidate, reference, cell, i as u8).role(reference, true) {
@@ -44,7 +40,7 @@ pub(crate) fn sweep<const D: usize>(
             };
             part.fill(0.0);
             part[i] = out;
-            reference.complete(&mut part, &divergence);
+            reference.complete(&mut part, divergence);
             let sum = &mut moments[cell.index() * n..(cell.index() + 1) * n];
             sum.iter_mut().zip(&part).for_each(|(a, b)| *a += b);
         }

@@ -43,6 +43,7 @@ mod marking;
 mod patch;
 mod reference;
 mod state;
+mod survey;
 
 pub use certificate::Certificate;
 pub use enclosure::{Enclosure, Guarantee};

@@ -13,15 +13,28 @@ use hypercircle_mesh::{CellId, VertexId};
 use crate::cholesky;
 use crate::reference::Reference;
 use crate::state::{Candidate, CellState, SideRole, SideState};
+use crate::survey::Survey;
 
 const NONE: u32 = u32::MAX;
 
 /// A cell of a patch with the vertex's number in it.
 type Member = (CellId, usize);
 
+/// What the patches of a candidate share.
+pub(crate) struct Problem<'a, const D: usize> {
+    pub(crate) candidate: Candidate<'a, D>,
+    /// What the fluxes have to balance.
+    pub(crate) survey: &'a Survey,
+    /// Tables at the points of assembly: any flux that balances is admissible, so the smallest one need not be found with the
+    /// finest rule.
+    pub(crate) reference: &'a Reference,
+    /// Tables at the points of the survey, for data on sides.
+    pub(crate) closer: &'a Reference,
+}
+
 /// Buffers for patches, one for each thread.
 pub(crate) struct PatchSolver<'a, const D: usize> {
-    candidate: &'a Candidate<'a, D>,
+    problem: &'a Problem<'a, D>,
     reference: &'a Reference,
     states: Vec<CellState<D>>,
     members: Vec<Member>,
@@ -37,10 +50,11 @@ pub(crate) struct PatchSolver<'a, const D: usize> {
 }
 
 impl<'a, const D: usize> PatchSolver<'a, D> {
-    pub(crate) fn new(candidate: &'a Candidate<'a, D>, reference: &'a Reference) -> Self {
+    pub(crate) fn new(problem: &'a Problem<'a, D>) -> Self {
+        let reference = problem.reference;
         let n = reference.stream.count;
         Self {
-            candidate,
+            problem,
             reference,
             states: Vec::new(),
             members: Vec::new(),
@@ -65,16 +79,16 @@ impl<'a, const D: usize> PatchSolver<'a, D> {
         self.divergence.clear();
         self.divergence.resize(count * tests, 0.0);
         for (k, (cell, i)) in self.members.iter().enumerate() {
-            self.states[k].visit(self.candidate, self.reference, *cell)?;
-            let moments = &mut self.divergence[k * tests..(k + 1) * tests];
-            self.states[k].vertex_moments(self.reference, *i, moments);
+            self.states[k].visit(&self.problem.candidate, self.reference, *cell)?;
+            let moments = self.problem.survey.vertex(self.reference, *cell, *i);
+            self.divergence[k * tests..(k + 1) * tests].copy_from_slice(moments);
         }
         let ends = if closed { None } else { Some(self.end_roles()) };
         self.march(ends.as_ref());
         self.number_streams(ends.as_ref());
         self.improve(ends.as_ref());
         // Out in the order of the cell numbers.
-        let mesh = self.candidate.space.mesh();
+        let mesh = self.problem.candidate.space.mesh();
         for cell in mesh.topology().cells_around(vertex) {
             let k = self.members.iter().position(|m| m.0 == *cell).unwrap_or(0);
             out.extend_from_slice(&self.moments[k * n..(k + 1) * n]);
@@ -84,7 +98,7 @@ impl<'a, const D: usize> PatchSolver<'a, D> {
 
     /// Collects the cells around a vertex counterclockwise; from the boundary if it is there. Tells whether they close.
     fn collect(&mut self, vertex: VertexId) -> bool {
-        let mesh = self.candidate.space.mesh();
+        let mesh = self.problem.candidate.space.mesh();
         let topology = mesh.topology();
         let around = topology.cells_around(vertex);
         let number = |cell: CellId| mesh.cell_vertices(cell).iter().position(|v| *v == vertex).unwrap_or(0);
@@ -108,7 +122,8 @@ impl<'a, const D: usize> PatchSolver<'a, D> {
         let (first, i) = self.members[0];
         let (last, j) = self.members[self.members.len() - 1];
         let side = |cell, local: usize, from_start| {
-            SideState::visit(self.candidate, self.reference, cell, local as u8).role(self.reference, from_start)
+            let closer = self.problem.closer;
+            SideState::visit(&self.problem.candidate, closer, cell, local as u8).role(closer, from_start)
         };
         [side(first, i, true), side(last, (j + 2) % 3, false)]
     }

@@ -6,12 +6,11 @@ use hypercircle_mesh::CellId;
 use crate::reference::Reference;
 
 /// What is known about the problem and the vector that is judged.
+#[derive(Clone, Copy)]
 pub(crate) struct Candidate<'a, const D: usize> {
     pub(crate) space: &'a Space<D>,
     pub(crate) terms: &'a Terms<D>,
     pub(crate) u: &'a [f64],
-    /// The algebraic residual as a density r_h, by cell in the primal basis; absent if it is at rounding level.
-    pub(crate) density: Option<&'a [f64]>,
 }
 
 /// Values at the points of one cell.
@@ -28,9 +27,8 @@ pub(crate) struct CellState<const D: usize> {
     pub(crate) conduction: Vec<[f64; D]>,
     /// Jᵀ A⁻¹ J / det J, the metric of the energy of Piola-mapped fields.
     pub(crate) metrics: Vec<[[f64; D]; D]>,
-    /// f − c u, and what of it has to be balanced by the flux (less the algebraic density).
+    /// f − c u, after [`CellState::visit_supply`].
     pub(crate) supply: Vec<f64>,
-    pub(crate) balanced: Vec<f64>,
     pub(crate) reaction: Vec<f64>,
     /// Smallest principal value of A at any point.
     pub(crate) least_conductivity: f64,
@@ -53,7 +51,6 @@ impl<const D: usize> CellState<D> {
             conduction: vec![[0.0; D]; points],
             metrics: vec![[[0.0; D]; D]; points],
             supply: vec![0.0; points],
-            balanced: vec![0.0; points],
             reaction: vec![0.0; points],
             least_conductivity: 0.0,
             uniform: false,
@@ -62,7 +59,7 @@ impl<const D: usize> CellState<D> {
         }
     }
 
-    /// Evaluates everything for a cell.
+    /// Evaluates a cell, save for what [`CellState::visit_supply`] adds.
     pub(crate) fn visit(
         &mut self,
         candidate: &Candidate<'_, D>,
@@ -79,7 +76,7 @@ impl<const D: usize> CellState<D> {
             self.places[q] = place(mesh, cell, point);
             self.weights[q] = reference.rule.weights()[q] * self.determinant;
         }
-        self.visit_coefficients(candidate)?;
+        self.visit_conductivity(candidate)?;
         let inverse = self.inverse_jacobian();
         let unknowns = space.unknowns(cell);
         for q in 0..self.u.len() {
@@ -96,18 +93,12 @@ impl<const D: usize> CellState<D> {
             self.u[q] = u;
             self.slopes[q] = slope;
             self.conduction[q] = self.tensors[q].apply(&gradient);
-            self.supply[q] -= self.reaction[q] * u;
-            self.balanced[q] = self.supply[q];
-            if let Some(density) = candidate.density {
-                let local = &density[cell.index() * values.len()..(cell.index() + 1) * values.len()];
-                self.balanced[q] -= local.iter().zip(values).map(|(r, v)| r * v).sum::<f64>();
-            }
         }
         Ok(())
     }
 
-    /// Conductivity with its metric, reaction and source (left in `supply`) at the points.
-    fn visit_coefficients(&mut self, candidate: &Candidate<'_, D>) -> Result<(), AssemblyError> {
+    /// Conductivity with its metric at the points.
+    fn visit_conductivity(&mut self, candidate: &Candidate<'_, D>) -> Result<(), AssemblyError> {
         let mesh = candidate.space.mesh();
         let conductivity = &candidate.terms.conductivity;
         let constant = conductivity.constant_in(mesh.region(self.cell));
@@ -133,6 +124,11 @@ impl<const D: usize> CellState<D> {
                 }
             }
         }
+        Ok(())
+    }
+
+    /// Evaluates reaction and source at the points of the cell visited last.
+    pub(crate) fn visit_supply(&mut self, candidate: &Candidate<'_, D>) {
         match &candidate.terms.reaction {
             Some(c) => c.fill(&self.places, &mut self.reaction),
             None => self.reaction.fill(0.0),
@@ -141,7 +137,9 @@ impl<const D: usize> CellState<D> {
             Some(f) => f.fill(&self.places, &mut self.supply),
             None => self.supply.fill(0.0),
         }
-        Ok(())
+        for q in 0..self.supply.len() {
+            self.supply[q] -= self.reaction[q] * self.u[q];
+        }
     }
 
     /// The largest A v·v over the points of the cell.
@@ -191,7 +189,7 @@ impl<const D: usize> CellState<D> {
         moments.fill(0.0);
         for q in 0..self.u.len() {
             let conducted: f64 = (0..D).map(|b| gradient[b] * self.conduction[q][b]).sum();
-            let density = self.weights[q] * (reference.hats[q][i] * self.balanced[q] - conducted);
+            let density = self.weights[q] * (reference.hats[q][i] * self.supply[q] - conducted);
             for (moment, v) in moments.iter_mut().zip(&reference.tests[q]) {
                 *moment += density * v;
             }

@@ -165,7 +165,8 @@ fn is_stuck(rounds: &[Round], exact_data: bool) -> bool {
     let [.., last] = rounds else { return false };
     let Some(before) = rounds.len().checked_sub(PATIENCE + 1).map(|k| rounds[k]) else { return false };
     let rising = last.bound > before.bound / PROGRESS;
-    !(last.bound <= PROGRESS * before.bound) && !(rising && !exact_data && last.relative > SEEN)
+    let progress = last.bound <= PROGRESS * before.bound || (rising && !exact_data && last.relative > SEEN);
+    !progress
 }
 
 /// Cells smaller than this share of the largest coordinate are at the end of what coordinates resolve.

@@ -36,7 +36,9 @@ mod table;
 pub use error::ElementError;
 pub use lagrange::Lagrange;
 pub use orthonormal::{orthonormal_values, polynomial_count, unit_legendre};
-pub use quadrature::Rule;
+pub use quadrature::{
+    Adaptive, Composite, Integral, IntegralEnd, IntervalRule, Kronrod, Quadrature, Rule, TriangleRule,
+};
 pub use raviart_thomas::RaviartThomas;
 pub use shape::Shape;
 pub use table::Table;

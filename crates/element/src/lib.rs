@@ -19,13 +19,17 @@
 //! # Ok::<(), hypercircle_element::ElementError>(())
 //! ```
 //!
-//! Rooms: [`Shape`] (reference cells), [`Rule`] (quadrature), [`Lagrange`] (nodal bases of any order),
-//! [`RaviartThomas`] (fields with continuous normal component), [`Table`] (bases tabulated at points) and the
-//! orthonormal polynomials beneath them ([`orthonormal_values`], [`unit_legendre`]).
+//! Rooms: [`Shape`] (reference cells); [`Rule`] (points and weights), [`Quadrature`] (the trait behind rules of your own,
+//! with the catalogs [`IntervalRule`] and [`TriangleRule`]) and [`Adaptive`] (rough integrands); [`Lagrange`] (nodal bases
+//! of any order), [`Hierarchic`] (bases that grow with the order), [`CrouzeixRaviart`] (midpoints of sides),
+//! [`RaviartThomas`] (fields with continuous normal component); [`Table`] (bases tabulated at points) and the orthonormal
+//! polynomials beneath them ([`orthonormal_values`], [`unit_legendre`]).
 #![forbid(unsafe_code)]
 
+mod crouzeix_raviart;
 mod dense;
 mod error;
+mod hierarchic;
 mod lagrange;
 mod orthonormal;
 mod quadrature;
@@ -33,7 +37,9 @@ mod raviart_thomas;
 mod shape;
 mod table;
 
+pub use crouzeix_raviart::CrouzeixRaviart;
 pub use error::ElementError;
+pub use hierarchic::Hierarchic;
 pub use lagrange::Lagrange;
 pub use orthonormal::{orthonormal_values, polynomial_count, unit_legendre};
 pub use quadrature::{

@@ -30,7 +30,7 @@ pub fn unit_legendre(highest: usize, t: f64) -> Vec<f64> {
 /// A value with its two derivatives.
 pub(crate) type Jet = [f64; 3];
 
-fn times(a: Jet, b: Jet) -> Jet {
+pub(crate) fn times(a: Jet, b: Jet) -> Jet {
     [a[0] * b[0], a[1] * b[0] + a[0] * b[1], a[2] * b[0] + a[0] * b[2]]
 }
 
@@ -47,10 +47,6 @@ pub fn polynomial_count(shape: Shape, degree: usize) -> usize {
     }
 }
 
-/// The orthonormal polynomials up to a degree at a reference point, each with its derivatives, sorted by degree; the
-/// first is constant.
-///
-/// On the triangle these are Qₘ(x, y) Jₙ(y) with Qₘ the Legendre polynomials scaled by (1 − y)ᵐ, and Jₙ the
 /// Values of the orthonormal polynomials up to a degree at a reference point, sorted by degree; the first is constant.
 ///
 /// ```
@@ -63,6 +59,10 @@ pub fn orthonormal_values(shape: Shape, degree: usize, at: &[f64; 2]) -> Vec<f64
     orthonormal(shape, degree, at).iter().map(|jet| jet[0]).collect()
 }
 
+/// The orthonormal polynomials up to a degree at a reference point, each with its derivatives, sorted by degree; the
+/// first is constant.
+///
+/// On the triangle these are Qₘ(x, y) Jₙ(y) with Qₘ the Legendre polynomials scaled by (1 − y)ᵐ, and Jₙ the
 /// Jacobi polynomials P⁽²ᵐ⁺¹'⁰⁾ (M. Dubiner, J. Sci. Comput. 6, 1991), evaluated by recurrences that hold at the apex too.
 pub(crate) fn orthonormal(shape: Shape, degree: usize, at: &[f64; 2]) -> Vec<Jet> {
     match shape {

@@ -4,6 +4,7 @@ mod adaptive;
 mod catalog;
 mod gauss;
 mod kronrod;
+mod pieces;
 mod rule;
 mod symmetric_high;
 mod symmetric_low;

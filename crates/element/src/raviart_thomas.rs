@@ -4,7 +4,7 @@ use crate::dense::inverse;
 use crate::orthonormal::{orthonormal, polynomial_count, unit_legendre};
 use crate::{ElementError, Lagrange, Rule, Shape};
 
-/// The space RT_q with moments as degrees of freedom: [P_q]² + x P̃_q on the reference triangle, its counterpart
+/// The space RT_q with moments as degrees of freedom: (P_q)² + x P̃_q on the reference triangle, its counterpart
 /// P_{q+1} on the interval.
 ///
 /// The moments of a field s come in this order:

@@ -4,12 +4,10 @@ use hypercircle::Solution;
 use hypercircle::assembly::{Condition, SideTables, place};
 use hypercircle::element::{Rule, Shape};
 
+use crate::families::Exact;
+
 /// √(∫ A∇e·∇e + ∫ c e² + ∫ α e² on Robin sides) for e = u − u_h, by quadrature eight degrees above the elements.
-pub(crate) fn error<const D: usize>(
-    solution: &Solution<D>,
-    values: &[f64],
-    exact: &dyn Fn(&[f64; D]) -> (f64, [f64; D]),
-) -> f64 {
+pub(crate) fn error<const D: usize>(solution: &Solution<D>, values: &[f64], exact: &Exact<D>) -> f64 {
     let (space, terms, mesh) = (solution.space(), solution.terms(), solution.mesh());
     let shape = space.basis().shape();
     let rule = Rule::of_degree(shape, 2 * space.order() + 8).unwrap();

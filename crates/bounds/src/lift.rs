@@ -33,7 +33,7 @@ pub(crate) fn energies<const D: usize>(
         let along: Vec<_> = fit.sides.points(side.local).iter().map(&deviation).collect();
         let size = candidate.space.unknowns(side.cell).iter().map(|k| candidate.u[*k as usize].abs());
         let scale = along.iter().map(|(g, _)| g.abs()).chain(size).fold(0.0, f64::max);
-        if corners.any(|(_, d)| d.abs() > 1e3 * ROUNDING * scale) {
+        if corners.any(|(_, d)| d.abs() > ROUNDING * scale) {
             energies.push((side.cell, f64::INFINITY));
             continue;
         }

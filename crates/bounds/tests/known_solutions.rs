@@ -163,3 +163,62 @@ fn one_dimension_is_bounded_sharply() {
         assert!((1.0..1.06).contains(&index));
     }
 }
+
+/// An inflow that is orthogonal to all moments of the flux: only the oscillation of the data pays for it. −Δu = 0 with u = 0 below,
+/// ∂u/∂n = cos(kx) above, insulated left and right: u = cos(kx) sinh(ky) / (k cosh k).
+#[test]
+fn an_inflow_that_the_flux_cannot_see_is_paid_for() {
+    for (order, m) in [(1, 2.0), (1, 4.0), (2, 2.0), (2, 4.0)] {
+        let k = m * PI;
+        let space = Space::new(square(1).into(), order).unwrap();
+        let mut terms = Terms::conducting(space.mesh(), tensorial(1.0));
+        let side = |name| space.mesh().find_side(name).unwrap();
+        terms.set(side("bottom"), Condition::Dirichlet(Arc::new(0.0)));
+        terms.set(side("top"), Condition::Neumann(Arc::new(move |at: &Place<2>| (k * at.x[0]).cos())));
+        let system = System::assemble(&space, &Pattern::new(&space), &terms, &Scatter).unwrap();
+        let u = solve(&system, 1e-15);
+        let certificate = Certificate::of(&space, &terms, &system, &u).unwrap();
+        let finer =
+            space.mesh().refine_uniformly().unwrap().0.refine_uniformly().unwrap().0.refine_uniformly().unwrap().0;
+        // The true error by quadrature on a finer mesh: the exact solution is steep.
+        let rule = Rule::of_degree(space.basis().shape(), 20).unwrap();
+        let mut square_error = 0.0;
+        for cell in finer.cells() {
+            for (point, w) in rule.points().iter().zip(rule.weights()) {
+                let x = place(&finer, cell, point).x;
+                let coarse = space.mesh().cells().find_map(|c| {
+                    let v = space.mesh().cell_vertices(c).iter().map(|v| space.mesh().point(*v)).collect::<Vec<_>>();
+                    let j = space.mesh().jacobian(c);
+                    let d = j[0][0] * j[1][1] - j[0][1] * j[1][0];
+                    let (dx, dy) = (x[0] - v[0][0], x[1] - v[0][1]);
+                    let at = [(j[1][1] * dx - j[0][1] * dy) / d, (j[0][0] * dy - j[1][0] * dx) / d];
+                    (at[0] >= 0.0 && at[1] >= 0.0 && at[0] + at[1] <= 1.0).then_some((c, at))
+                });
+                let (c, at) = coarse.unwrap();
+                let g = space.gradient(&u, c, &at);
+                let slope =
+                    [-(k * x[0]).sin() * (k * x[1]).sinh() / k.cosh(), (k * x[0]).cos() * (k * x[1]).cosh() / k.cosh()];
+                let e = [slope[0] - g[0], slope[1] - g[1]];
+                square_error += w * 2.0 * finer.cell_measure(cell) * (e[0] * e[0] + e[1] * e[1]);
+            }
+        }
+        let index = certificate.bound() / square_error.sqrt();
+        println!("P{order}, inflow cos({m}πx): bound/error {index:.3}");
+        assert!(index >= 1.0);
+    }
+}
+
+/// A vector that misses a Dirichlet value, however little above rounding, has no finite bound.
+#[test]
+fn a_missed_prescribed_value_has_no_bound() {
+    let space = Space::new(Interval::uniform(0.0, 1.0, 1).mesh().unwrap().into(), 1).unwrap();
+    let mut terms = Terms::conducting(space.mesh(), tensorial(1.0));
+    for (name, value) in [("start", 293.15), ("end", 294.15)] {
+        terms.set(space.mesh().find_side(name).unwrap(), Condition::Dirichlet(Arc::new(value)));
+    }
+    let system = System::assemble(&space, &Pattern::new(&space), &terms, &Scatter).unwrap();
+    let missed = Certificate::of(&space, &terms, &system, &[293.15 * (1.0 + 9e-10), 294.15]).unwrap();
+    assert!(missed.bound().is_infinite());
+    let met = Certificate::of(&space, &terms, &system, &[293.15, 294.15]).unwrap();
+    assert!(met.bound() < 1e-12);
+}

@@ -24,12 +24,18 @@ pub enum Tolerance {
     FlowRelative(f64),
     /// Width of that interval, absolute.
     FlowAbsolute(f64),
+    /// Width of the guaranteed interval of the work of the loads, relative to it ([`Solution::load_work`]).
+    WorkRelative(f64),
 }
 
 impl Tolerance {
     fn value(self) -> f64 {
         match self {
-            Self::Relative(v) | Self::Absolute(v) | Self::FlowRelative(v) | Self::FlowAbsolute(v) => v,
+            Self::Relative(v)
+            | Self::Absolute(v)
+            | Self::FlowRelative(v)
+            | Self::FlowAbsolute(v)
+            | Self::WorkRelative(v) => v,
         }
     }
 
@@ -40,6 +46,7 @@ impl Tolerance {
             Self::Absolute(_) => solution.certificate()?.bound(),
             Self::FlowRelative(_) => solution.exchanged_flow()?.relative_width(),
             Self::FlowAbsolute(_) => solution.exchanged_flow()?.width(),
+            Self::WorkRelative(_) => solution.load_work()?.relative_width(),
         };
         Ok(reached / self.value())
     }

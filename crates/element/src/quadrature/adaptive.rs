@@ -9,9 +9,10 @@ use crate::{ElementError, Shape};
 /// The piece with the largest error estimate is halved until the sum of the estimates is at most
 /// max(`absolute`, `relative` · |value|). On an interval the estimate of a piece is the difference of the two rules of a
 /// Gauss–Kronrod pair, which share their points; on a triangle, halved across its longest side, the difference of the
-/// symmetric rules of degrees 8 and 5 (16 and 7 points). A half keeps at least 1/64 of the estimate of the whole. The better rule gives the value, so that the estimate, which
-/// is of the worse one, is on the safe side for smooth functions; it is no proof: a spike between all points stays
-/// unseen.
+/// symmetric rules of degrees 8 and 5 (16 and 7 points). A half keeps at least a small part of the estimate of the whole
+/// (1/4096 on intervals, 1/64 on triangles), lest a jump that its points miss be forgotten. The better rule gives the
+/// value, so that the estimate, which is of the worse one, is on the safe side for smooth functions; it is no proof: a
+/// spike between all points stays unseen.
 ///
 /// ```
 /// use hypercircle_element::{Adaptive, IntegralEnd};
@@ -22,8 +23,8 @@ use crate::{ElementError, Shape};
 /// ```
 ///
 /// # Source
-/// R. Piessens, E. de Doncker-Kapenga, C. W. Überhuber, D. K. Kahaner, 1983 (global halving with Gauss–Kronrod pairs);
-/// D. P. Laurie, Math. Comp. 66, 1997 (the pairs); M.-C. Rivara, Int. J. Numer. Methods Eng. 20, 1984 (longest sides).
+/// P. J. Davis, P. Rabinowitz, Methods of Numerical Integration, 1984 (halving where the estimate is largest); D. P. Laurie,
+/// Math. Comp. 66, 1997 (the pairs); M.-C. Rivara, Int. J. Numer. Methods Eng. 20, 1984 (longest sides).
 #[derive(Debug, Clone, Copy, PartialEq)]
 pub struct Adaptive {
     /// Error allowed, in the unit of the integral.
@@ -75,10 +76,6 @@ pub enum IntegralEnd {
         at: [f64; 2],
     },
 }
-
-/// Part of the error of a piece that each half keeps at least: a half whose points all miss a jump looks exact, but comes
-/// from a piece that was not. Smooth functions lose more than this by halving a triangle.
-const INHERITED: f64 = 1.0 / 64.0;
 
 impl Adaptive {
     /// Integral of a function from `a` to `b`; b < a changes the sign.
@@ -157,7 +154,7 @@ impl Adaptive {
             let Some(halves) = halves else {
                 return Ok(result(&pieces, evaluations, IntegralEnd::Rounding));
             };
-            inherited = INHERITED * pieces.drop_worst();
+            inherited = C::INHERITED * pieces.drop_worst();
             waiting.extend(halves);
         }
     }

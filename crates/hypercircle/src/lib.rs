@@ -48,6 +48,7 @@ mod budget;
 mod diffusion;
 mod energy;
 mod error;
+mod extremes;
 #[cfg(feature = "export")]
 mod fields;
 mod refine;
@@ -66,10 +67,11 @@ pub use hypercircle_solve as solve;
 pub use budget::{Budget, Limit, forecast_bytes};
 pub use diffusion::Diffusion;
 pub use error::Error;
+pub use extremes::{Extreme, Extremes};
 pub use hypercircle_assembly::{Coefficient, PerRegion, Place, Tensor};
 pub use hypercircle_bounds::{Certificate, Enclosure, Guarantee};
 pub use refine::{Answer, Ending, Goal, Tolerance};
-pub use results::{Balance, Extreme, Extremes, RegionResult};
+pub use results::{Balance, RegionResult};
 pub use solution::Solution;
 pub use watch::{Round, Signal, Unwatched, Watch};
 

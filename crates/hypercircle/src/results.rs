@@ -1,7 +1,7 @@
-//! What one asks of a solution: integrals, flows, the balance, extremes.
+//! What one asks of a solution: integrals, flows, the balance.
 
 use hypercircle_assembly::{Condition, Place, SideTables, cell_rule, place, side_rule};
-use hypercircle_mesh::{CellId, SideNameId};
+use hypercircle_mesh::SideNameId;
 
 use crate::{Error, Solution};
 
@@ -48,35 +48,6 @@ impl Balance {
         self.inflows.iter().map(|(_, flow)| flow.abs()).fold(self.source.abs().max(self.reaction.abs()), f64::max)
     }
 }
-
-/// A value and where it is taken.
-#[derive(Debug, Clone, Copy, PartialEq)]
-pub struct Extreme<const D: usize> {
-    /// The value.
-    pub value: f64,
-    /// Its place.
-    pub at: [f64; D],
-}
-
-/// Smallest and largest value with their places.
-#[derive(Debug, Clone, Copy, PartialEq)]
-pub struct Extremes<const D: usize> {
-    /// The smallest.
-    pub least: Extreme<D>,
-    /// The largest.
-    pub most: Extreme<D>,
-}
-
-/// A value at a reference point of a cell.
-#[derive(Debug, Clone, Copy)]
-struct Candidate {
-    value: f64,
-    cell: CellId,
-    at: [f64; 2],
-}
-
-/// Elements of order 2 and more are searched at their nodes and on a lattice of this many steps along each side.
-const LATTICE: usize = 4;
 
 impl<const D: usize> Solution<D> {
     /// Integral and mean over a region.
@@ -204,103 +175,5 @@ impl<const D: usize> Solution<D> {
             }
         }
         Ok(())
-    }
-
-    /// Smallest and largest value of the whole field. Exact for linear elements; for higher orders found on a lattice in every
-    /// cell and then followed to the extreme nearby.
-    #[must_use]
-    pub fn extremes(&self) -> Extremes<D> {
-        let shape = self.basis().shape();
-        let mut points = self.basis().nodes().to_vec();
-        if self.space().order() > 1 {
-            let step = 1.0 / LATTICE as f64;
-            let rows = if D == 1 { 0 } else { LATTICE };
-            points.extend((0..=rows).flat_map(|j| (0..=LATTICE - j).map(move |i| [i as f64 * step, j as f64 * step])));
-        }
-        debug_assert!(points.iter().all(|p| shape.hats(p).iter().all(|hat| *hat >= -1e-12)));
-        let [least, most] = self.search(self.mesh().cells().map(|cell| (cell, points.as_slice())));
-        let directions = [[1.0, 0.0], [0.0, 1.0], [1.0, -1.0]];
-        let directions = &directions[..if D == 1 { 1 } else { 3 }];
-        Extremes { least: self.climb(least, -1.0, directions), most: self.climb(most, 1.0, directions) }
-    }
-
-    /// Smallest and largest value along all sides of a name.
-    ///
-    /// # Errors
-    /// A name that the mesh does not have or that no side carries.
-    pub fn extremes_on(&self, side: &str) -> Result<Extremes<D>, Error> {
-        let name = self.mesh().find_side(side)?;
-        let shape = self.basis().shape();
-        let steps = if self.space().order() > 1 { 2 * LATTICE } else { 1 };
-        let along: Vec<Vec<[f64; 2]>> = (0..shape.vertex_count())
-            .map(|local| {
-                let ends = shape.side_vertices(local);
-                let (a, b) = (shape.vertices()[ends[0]], shape.vertices()[ends[ends.len() - 1]]);
-                (0..=steps)
-                    .map(|k| {
-                        let t = k as f64 / steps as f64;
-                        [0, 1].map(|i| a[i] + t * (b[i] - a[i]))
-                    })
-                    .collect()
-            })
-            .collect();
-        let sides: Vec<_> = self.mesh().named_sides().iter().filter(|s| s.name == name).collect();
-        if sides.is_empty() {
-            return Err(Error::EmptySide { name: side.to_owned() });
-        }
-        let [least, most] = self.search(sides.iter().map(|s| (s.cell, along[usize::from(s.local)].as_slice())));
-        // The side on which a candidate lies, walked along.
-        let direction = |best: &Candidate| {
-            let own = sides.iter().filter(|s| s.cell == best.cell).map(|s| &along[usize::from(s.local)]);
-            own.filter(|points| points.contains(&best.at))
-                .map(|points| [0, 1].map(|i| points[points.len() - 1][i] - points[0][i]))
-                .collect::<Vec<_>>()
-        };
-        let (down, up) = (direction(&least), direction(&most));
-        Ok(Extremes { least: self.climb(least, -1.0, &down), most: self.climb(most, 1.0, &up) })
-    }
-
-    fn search<'p>(&self, cells: impl Iterator<Item = (CellId, &'p [[f64; 2]])>) -> [Candidate; 2] {
-        let mut best =
-            [f64::INFINITY, f64::NEG_INFINITY].map(|value| Candidate { value, cell: CellId(0), at: [0.0; 2] });
-        let mut tabulated: Option<(&[[f64; 2]], hypercircle_element::Table)> = None;
-        for (cell, points) in cells {
-            if tabulated.as_ref().is_none_or(|(known, _)| !std::ptr::eq(*known, points)) {
-                tabulated = Some((points, self.basis().table(points)));
-            }
-            let Some((_, table)) = &tabulated else { continue };
-            let unknowns = self.space().unknowns(cell);
-            for (q, point) in points.iter().enumerate() {
-                let u: f64 = unknowns.iter().zip(table.values_at(q)).map(|(k, v)| self.values()[*k as usize] * v).sum();
-                let candidate = Candidate { value: u, cell, at: *point };
-                if u < best[0].value {
-                    best[0] = candidate;
-                }
-                if u > best[1].value {
-                    best[1] = candidate;
-                }
-            }
-        }
-        best
-    }
-
-    /// Walks from a candidate to the extreme value near it in its cell, along the given directions, by halving steps.
-    fn climb(&self, mut best: Candidate, sign: f64, directions: &[[f64; 2]]) -> Extreme<D> {
-        let shape = self.basis().shape();
-        let mut step = if self.space().order() > 1 { 1.0 / LATTICE as f64 } else { 0.0 };
-        while step > 1e-9 {
-            let tries =
-                directions.iter().flat_map(|d| [step, -step].map(|s| [best.at[0] + s * d[0], best.at[1] + s * d[1]]));
-            let inside = tries.filter(|at| shape.hats(at).iter().all(|hat| *hat >= 0.0));
-            let better = inside
-                .map(|at| (self.space().value(self.values(), best.cell, &std::array::from_fn(|i| at[i])), at))
-                .filter(|(value, _)| sign * value > sign * best.value)
-                .max_by(|a, b| (sign * a.0).total_cmp(&(sign * b.0)));
-            match better {
-                Some((value, at)) => best = Candidate { value, at, ..best },
-                None => step *= 0.5,
-            }
-        }
-        Extreme { value: best.value, at: place(self.mesh(), best.cell, &best.at).x }
     }
 }

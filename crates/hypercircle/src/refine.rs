@@ -171,13 +171,13 @@ const SEEN: f64 = 1e-8;
 fn is_stuck(rounds: &[Round], exact_data: bool) -> bool {
     let [.., last] = rounds else { return false };
     let Some(before) = rounds.len().checked_sub(PATIENCE + 1).map(|k| rounds[k]) else { return false };
-    let rising = last.bound > before.bound / PROGRESS;
-    let progress = last.bound <= PROGRESS * before.bound || (rising && !exact_data && last.relative > SEEN);
-    !progress
+    let falling = last.bound.is_finite() && last.bound <= PROGRESS * before.bound;
+    let rising = last.bound.is_finite() && last.bound > before.bound / PROGRESS && !exact_data && last.relative > SEEN;
+    !falling && !rising
 }
 
 /// Cells smaller than this share of the largest coordinate are at the end of what coordinates resolve.
-const RESOLUTION: f64 = 1e-12;
+const RESOLUTION: f64 = 2e-15;
 /// A round refines in at most so many passes, and no further than to so many times the cells.
 const PASSES: usize = 8;
 const GROWTH: f64 = 1.15;
@@ -251,8 +251,10 @@ fn refined<const D: usize>(
     let mut shares = shares.to_vec();
     for _ in 0..PASSES {
         let now = finer.as_ref().unwrap_or(mesh);
-        let mut marked = mark(&shares, share);
-        marked.retain(|cell| now.cell_diameter(*cell) > smallest);
+        for cell in now.cells().filter(|c| now.cell_diameter(*c) <= smallest) {
+            shares[cell.index()] = 0.0;
+        }
+        let marked = mark(&shares, share);
         if marked.is_empty() {
             break;
         }
